@@ -1,0 +1,20 @@
+//! tidewright: from an arterial gas to the next ventilator settings.
+//!
+//! The layers, an arrow may only point down:
+//!
+//! | layer | what it holds |
+//! | --- | --- |
+//! | `cli` | the command line |
+//! | `note` | faces on paper: text, JSON |
+//! | `planning` | baseline, forecast, limits, plan, levers, belief, course: what a clinician asks |
+//! | [`case`] | the patient's record: types, TOML in, profiles |
+//! | `physiology` | pure formulas, one file a topic |
+//! | [`quantity`] | units: small types, the table of inputs, reading and showing |
+//!
+//! The engine (quantity, physiology, planning) knows no file, no screen, no clock and no dice.
+//!
+//! Decision support for trained clinicians: confirm with a repeat gas; local protocol and the responsible
+//! clinician decide.
+
+pub mod case;
+pub mod quantity;
