@@ -17,4 +17,5 @@
 //! clinician decide.
 
 pub mod case;
+pub mod physiology;
 pub mod quantity;
