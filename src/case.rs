@@ -8,3 +8,4 @@ pub mod moment;
 pub mod profile;
 pub mod record;
 pub mod settings;
+pub mod slots;

@@ -29,8 +29,8 @@ fn draft(entries: Vec<Entry>) -> Draft {
     }
 }
 
-fn minute(minute: i64) -> Option<Moment> {
-    Some(Moment { instant: Timestamp::from_second(minute * 60).unwrap(), offset: Offset::UTC })
+fn minute(minute: i64) -> Moment {
+    Moment { instant: Timestamp::from_second(minute * 60).unwrap(), offset: Offset::UTC }
 }
 
 fn volume() -> SettingsChange {
@@ -44,7 +44,7 @@ fn volume() -> SettingsChange {
 }
 
 fn entry(at: i64, settings: SettingsChange) -> Entry {
-    Entry { at: minute(at), settings, ..Entry::default() }
+    Entry { at: Some(minute(at)), settings, ..Entry::default() }
 }
 
 fn in_force(record: &Record, index: usize) -> &Settings {
@@ -70,9 +70,9 @@ fn an_entry_inherits_what_it_does_not_repeat_and_a_timing_key_replaces_the_held_
     let third = SettingsChange { ratio: Some(3.0), ..SettingsChange::default() };
     let record = Record::check(draft(vec![entry(0, first), entry(1, second), entry(2, third)])).unwrap();
     assert_eq!(in_force(&record, 1).timing, Timing::Flow(60.0));
-    assert_eq!(in_force(&record, 1).rate_per_min, 24.0);
+    assert_eq!(Some(in_force(&record, 1).rate_per_min), Some(24.0));
     assert_eq!(in_force(&record, 2).timing, Timing::Ratio(3.0));
-    assert_eq!(in_force(&record, 2).apparatus_dead_space_ml, 30.0);
+    assert_eq!(Some(in_force(&record, 2).apparatus_dead_space_ml), Some(30.0));
     assert!(!in_force(&record, 2).apparatus_assumed);
 }
 
@@ -108,7 +108,7 @@ fn entries_are_put_in_order_of_time_before_anything_is_inherited() {
     let record = Record::check(draft(vec![entry(60, late), entry(0, volume())])).unwrap();
     let order: Vec<_> = record.occasions().iter().map(|occasion| occasion.number).collect();
     assert_eq!(order, [2, 1]);
-    assert_eq!(in_force(&record, 1).rate_per_min, 28.0);
+    assert_eq!(Some(in_force(&record, 1).rate_per_min), Some(28.0));
 }
 
 #[test]
@@ -118,8 +118,8 @@ fn an_amending_entry_is_no_occasion_and_leaves_the_time_of_what_it_amends() {
     let record = Record::check(draft(vec![entry(0, volume()), amending])).unwrap();
     assert_eq!(record.occasions().len(), 1);
     assert_eq!(record.entries().len(), 2);
-    assert_eq!(record.occasions()[0].at, minute(0));
-    assert_eq!(in_force(&record, 0).rate_per_min, 26.0);
+    assert_eq!(record.occasions()[0].at, Some(minute(0)));
+    assert_eq!(Some(in_force(&record, 0).rate_per_min), Some(26.0));
 }
 
 #[test]
