@@ -1,8 +1,11 @@
 //! The patient's record: what a person charts, read from TOML or flags, checked once, and the profile of limits.
 
+mod amend;
 pub mod entry;
 pub mod fault;
+mod inherit;
 pub mod moment;
 pub mod profile;
 pub mod record;
 pub mod settings;
+pub mod slots;

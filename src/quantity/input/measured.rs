@@ -1,0 +1,191 @@
+//! Measurements and the gas.
+
+use super::{Input, Key};
+use crate::quantity::unit::Dimension;
+
+pub(super) const MEASURED: [Input; 18] = [
+    Input::new(
+        Key::TotalRate,
+        ["measured", "total_rate", "total respiratory rate"],
+        Dimension::Rate,
+        [1.0, 80.0],
+        "22",
+        "above 80 no adult breathes: common practice",
+    ),
+    Input::new(
+        Key::ExhaledTidalVolume,
+        ["measured", "exhaled_tidal_volume", "exhaled tidal volume"],
+        Dimension::Volume,
+        [20.0, 2000.0],
+        "372",
+        "a near-empty lung to a deep sigh: common practice",
+    ),
+    Input::new(
+        Key::MinuteVentilation,
+        ["measured", "minute_ventilation", "minute volume"],
+        Dimension::Flow,
+        [0.5, 60.0],
+        "8.2",
+        "common practice",
+    )
+    .step(0.1, 1),
+    Input::new(
+        Key::Plateau,
+        ["measured", "plateau", "plateau inspiratory pressure"],
+        Dimension::AirwayPressure,
+        [5.0, 80.0],
+        "27",
+        "common practice",
+    ),
+    Input::new(
+        Key::Peak,
+        ["measured", "peak", "peak inspiratory pressure"],
+        Dimension::AirwayPressure,
+        [5.0, 120.0],
+        "38",
+        "ventilators relieve at 100 to 120: common practice",
+    ),
+    Input::new(
+        Key::TotalPeep,
+        ["measured", "total_peep", "total PEEP"],
+        Dimension::AirwayPressure,
+        [0.0, 50.0],
+        "12",
+        "set PEEP to 30 and what is trapped: common practice",
+    )
+    .step(0.5, 1),
+    Input::new(
+        Key::AutoPeep,
+        ["measured", "auto_peep", "auto-PEEP"],
+        Dimension::AirwayPressure,
+        [0.0, 40.0],
+        "2",
+        "common practice",
+    )
+    .step(0.5, 1),
+    Input::new(
+        Key::MeanAirwayPressure,
+        ["measured", "mean_airway_pressure", "mean airway pressure"],
+        Dimension::AirwayPressure,
+        [1.0, 70.0],
+        "16",
+        "common practice",
+    ),
+    Input::new(
+        Key::Compliance,
+        ["measured", "compliance", "respiratory-system compliance"],
+        Dimension::Compliance,
+        [3.0, 200.0],
+        "25",
+        "the stiffest lungs of adults to the slackest: common practice",
+    ),
+    Input::new(
+        Key::Resistance,
+        ["measured", "resistance", "inspiratory resistance"],
+        Dimension::Resistance,
+        [0.5, 150.0],
+        "14",
+        "common practice",
+    ),
+    Input::new(
+        Key::ExpiratoryResistance,
+        ["measured", "expiratory_resistance", "expiratory resistance"],
+        Dimension::Resistance,
+        [0.5, 150.0],
+        "18",
+        "common practice",
+    ),
+    Input::new(
+        Key::CircuitCompliance,
+        ["measured", "circuit_compliance", "circuit compliance"],
+        Dimension::Compliance,
+        [0.0, 10.0],
+        "1.5",
+        "hoses of 1 to 4 mL/cmH2O: common practice",
+    )
+    .step(0.1, 1),
+    Input::new(
+        Key::EndTidalCo2,
+        ["measured", "end_tidal_co2", "end-tidal PCO2"],
+        Dimension::GasPressure,
+        [3.0, 150.0],
+        "38",
+        "common practice",
+    ),
+    Input::new(
+        Key::MixedExpiredCo2,
+        ["measured", "mixed_expired_co2", "mixed expired PCO2"],
+        Dimension::GasPressure,
+        [2.0, 80.0],
+        "21",
+        "common practice",
+    ),
+    Input::new(
+        Key::DeadSpaceFraction,
+        ["measured", "dead_space_fraction", "dead-space fraction (VD/VT)"],
+        Dimension::Fraction,
+        [0.05, 0.95],
+        "0.62",
+        "common practice",
+    ),
+    Input::new(
+        Key::Co2Production,
+        ["measured", "co2_production", "CO2 production"],
+        Dimension::GasOutput,
+        [40.0, 1000.0],
+        "190",
+        "deep cooling to a seizure: common practice",
+    ),
+    Input::new(
+        Key::Temperature,
+        ["measured", "temperature", "body temperature"],
+        Dimension::Temperature,
+        [25.0, 43.0],
+        "38.1",
+        "deep accidental cooling to heat stroke; 37 when not measured: common practice",
+    )
+    .default(37.0),
+    Input::new(
+        Key::Spo2,
+        ["measured", "spo2", "SpO2"],
+        Dimension::Fraction,
+        [0.3, 1.0],
+        "0.93",
+        "common practice",
+    ),
+];
+
+pub(super) const GAS: [Input; 4] = [
+    Input::new(
+        Key::Ph,
+        ["gas", "ph", "pH"],
+        Dimension::Ph,
+        [6.5, 8.0],
+        "7.24",
+        "what analysers report: common practice",
+    ),
+    Input::new(
+        Key::Paco2,
+        ["gas", "paco2", "PaCO2"],
+        Dimension::GasPressure,
+        [10.0, 150.0],
+        "63",
+        "the range a pH target may ask for; wider readings are rare: common practice",
+    ),
+    Input::new(
+        Key::Pao2,
+        ["gas", "pao2", "PaO2"],
+        Dimension::GasPressure,
+        [20.0, 700.0],
+        "71",
+        "deep hypoxaemia to pure oxygen at sea level: common practice",
+    ),
+    Input::new(
+        Key::Bicarbonate,
+        ["gas", "bicarbonate", "bicarbonate"],
+        Dimension::Concentration,
+        [1.0, 80.0],
+        "26.1",
+        "what analysers report: common practice",
+    ),
+];

@@ -1,0 +1,261 @@
+//! The patient, weaning, trials and charted plans.
+
+use super::{Input, Key};
+use crate::quantity::unit::Dimension;
+
+pub(super) const PATIENT: [Input; 6] = [
+    Input::new(
+        Key::Height,
+        ["patient", "height", "height"],
+        Dimension::Length,
+        [130.0, 220.0],
+        "\"163 cm\" or \"5 ft 4 in\"",
+        "where the predicted-weight rule is used; outside give predicted_weight",
+    )
+    .step(1.0, 1),
+    Input::new(
+        Key::Weight,
+        ["patient", "weight", "actual weight"],
+        Dimension::Mass,
+        [25.0, 350.0],
+        "\"82 kg\"",
+        "adults at their extremes: common practice",
+    )
+    .step(1.0, 1),
+    Input::new(
+        Key::Age,
+        ["patient", "age", "age"],
+        Dimension::Age,
+        [16.0, 110.0],
+        "61",
+        "adults: common practice",
+    ),
+    Input::new(
+        Key::PredictedWeight,
+        ["patient", "predicted_weight", "predicted body weight"],
+        Dimension::Mass,
+        [3.0, 120.0],
+        "\"54 kg\"",
+        "also for children and after amputation: common practice",
+    )
+    .step(1.0, 1),
+    Input::new(
+        Key::BarometricPressure,
+        ["patient", "barometric_pressure", "barometric pressure"],
+        Dimension::GasPressure,
+        [350.0, 800.0],
+        "\"755 mmHg\"",
+        "6000 m to the deepest valley: standard atmosphere; 760 when not given",
+    )
+    .default(760.0),
+    Input::new(
+        Key::Altitude,
+        ["patient", "altitude", "altitude"],
+        Dimension::Altitude,
+        [-430.0, 6000.0],
+        "\"1600 m\"",
+        "the lowest shore on land to the highest lasting settlements and above: common practice",
+    ),
+];
+
+/// Fills the table before its rows are laid in.
+pub(super) const FIRST: Input = {
+    let [first, ..] = PATIENT;
+    first
+};
+
+pub(super) const REST: [Input; 24] = [
+    Input::new(
+        Key::SpontaneousRate,
+        ["weaning", "spontaneous_rate", "spontaneous rate"],
+        Dimension::Rate,
+        [1.0, 80.0],
+        "24",
+        "common practice",
+    ),
+    Input::new(
+        Key::SpontaneousTidalVolume,
+        ["weaning", "spontaneous_tidal_volume", "spontaneous tidal volume"],
+        Dimension::Volume,
+        [30.0, 2000.0],
+        "310",
+        "common practice",
+    ),
+    Input::new(
+        Key::InspiratoryPressureMax,
+        ["weaning", "inspiratory_pressure_max", "maximal inspiratory pressure"],
+        Dimension::AirwayPressure,
+        [-200.0, -1.0],
+        "-28",
+        "a pressure below that of the air, hence negative: common practice",
+    ),
+    Input::new(
+        Key::VitalCapacity,
+        ["weaning", "vital_capacity", "vital capacity"],
+        Dimension::Volume,
+        [50.0, 8000.0],
+        "720",
+        "common practice",
+    ),
+    Input::new(
+        Key::OcclusionPressure,
+        ["weaning", "occlusion_pressure", "occlusion pressure (P0.1)"],
+        Dimension::AirwayPressure,
+        [0.0, 30.0],
+        "2.9",
+        "common practice",
+    )
+    .step(0.1, 1),
+    Input::new(
+        Key::Spo2FractionOn,
+        ["weaning", "spo2_fraction_on", "FiO2 when SpO2 was read"],
+        Dimension::Fraction,
+        [0.21, 1.0],
+        "0.4",
+        "from air to pure oxygen",
+    ),
+    Input::new(
+        Key::HeartRate,
+        ["weaning", "heart_rate", "heart rate"],
+        Dimension::Rate,
+        [15.0, 300.0],
+        "102",
+        "common practice",
+    ),
+    Input::new(
+        Key::SystolicPressure,
+        ["weaning", "systolic_pressure", "systolic pressure"],
+        Dimension::BloodPressure,
+        [30.0, 300.0],
+        "138",
+        "common practice",
+    ),
+    Input::new(
+        Key::TrialSupport,
+        ["trial", "support", "support during the trial"],
+        Dimension::AirwayPressure,
+        [0.0, 30.0],
+        "5 (or \"t-piece\")",
+        "common practice",
+    ),
+    Input::new(
+        Key::ObservedMinute,
+        ["observation", "minute", "minute of the trial"],
+        Dimension::Minutes,
+        [0.0, 1440.0],
+        "10",
+        "a day at most: common practice",
+    ),
+    Input::new(
+        Key::ObservedRate,
+        ["observation", "rate", "rate"],
+        Dimension::Rate,
+        [1.0, 80.0],
+        "24",
+        "common practice",
+    ),
+    Input::new(
+        Key::ObservedTidalVolume,
+        ["observation", "tidal_volume", "tidal volume"],
+        Dimension::Volume,
+        [30.0, 2000.0],
+        "340",
+        "common practice",
+    ),
+    Input::new(
+        Key::ObservedHeartRate,
+        ["observation", "heart_rate", "heart rate"],
+        Dimension::Rate,
+        [15.0, 300.0],
+        "102",
+        "common practice",
+    ),
+    Input::new(
+        Key::ObservedSystolicPressure,
+        ["observation", "systolic_pressure", "systolic pressure"],
+        Dimension::BloodPressure,
+        [30.0, 300.0],
+        "138",
+        "common practice",
+    ),
+    Input::new(
+        Key::ObservedSpo2,
+        ["observation", "spo2", "SpO2"],
+        Dimension::Fraction,
+        [0.3, 1.0],
+        "0.95",
+        "common practice",
+    ),
+    Input::new(
+        Key::PlannedPaco2,
+        ["plan", "target_paco2", "target PaCO2"],
+        Dimension::GasPressure,
+        [10.0, 150.0],
+        "50",
+        "the range a target may lie in",
+    ),
+    Input::new(
+        Key::PlannedRate,
+        ["plan", "rate", "planned rate"],
+        Dimension::Rate,
+        [4.0, 60.0],
+        "28",
+        "as the set rate",
+    ),
+    Input::new(
+        Key::PlannedTidalVolume,
+        ["plan", "tidal_volume", "planned tidal volume"],
+        Dimension::Volume,
+        [50.0, 1500.0],
+        "380",
+        "as the set tidal volume",
+    ),
+    Input::new(
+        Key::PlannedInspiratoryPressure,
+        ["plan", "inspiratory_pressure", "planned inspiratory pressure"],
+        Dimension::AirwayPressure,
+        [1.0, 60.0],
+        "16",
+        "as the inspiratory pressure",
+    ),
+    Input::new(
+        Key::ForecastPaco2,
+        ["plan", "forecast_paco2", "forecast PaCO2"],
+        Dimension::GasPressure,
+        [0.0, 2000.0],
+        "51.2",
+        "written by the program: any finite forecast",
+    ),
+    Input::new(
+        Key::ExpectedPaco2,
+        ["plan", "expected_paco2", "expected PaCO2"],
+        Dimension::GasPressure,
+        [0.0, 2000.0],
+        "50.8",
+        "written by the program: any finite forecast",
+    ),
+    Input::new(
+        Key::HalfInterval,
+        ["plan", "half_interval", "half interval of PaCO2"],
+        Dimension::GasPressure,
+        [0.0, 2000.0],
+        "[46.8, 55.2]",
+        "written by the program: any finite forecast",
+    ),
+    Input::new(
+        Key::WideInterval,
+        ["plan", "wide_interval", "wide interval of PaCO2"],
+        Dimension::GasPressure,
+        [0.0, 2000.0],
+        "[38.0, 66.9]",
+        "written by the program: any finite forecast",
+    ),
+    Input::new(
+        Key::SettleMinutes,
+        ["plan", "settle_minutes", "minutes until settled"],
+        Dimension::Minutes,
+        [0.0, 10000.0],
+        "30",
+        "written by the program: any finite forecast",
+    ),
+];
