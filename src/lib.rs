@@ -18,4 +18,5 @@
 
 pub mod case;
 pub mod physiology;
+pub mod planning;
 pub mod quantity;
