@@ -280,17 +280,14 @@ fn pressure_control_unread(number: usize) -> Fault {
     )
 }
 
-/// Whether two settings move the same ventilation: everything but PEEP and FiO2.
-fn same_ventilation(one: &InForce, other: &InForce) -> bool {
-    match (one, other) {
-        (InForce::Mandatory(one), InForce::Mandatory(other)) => {
-            one.inflation == other.inflation
-                && (one.rate_per_min - other.rate_per_min).abs() <= 0.0
-                && one.timing == other.timing
-                && (one.apparatus_dead_space_ml - other.apparatus_dead_space_ml).abs() <= 0.0
-        }
-        _ => one == other,
-    }
+/// Whether two settings move the same ventilation: rate, volume and apparatus as the patient gets them.
+fn same_ventilation(mechanics: &Mechanics, one: &InForce, other: &InForce) -> bool {
+    let moved = |in_force: &InForce| {
+        let settings = in_force.mandatory()?;
+        let rate = mechanics.effective_rate(settings.rate_per_min);
+        Some((rate, volume_of(mechanics, settings, rate)?, settings.apparatus_dead_space_ml))
+    };
+    one == other || moved(one).is_some_and(|one| Some(one) == moved(other))
 }
 
 /// The gases under mandatory ventilation, in the order they were drawn, ending with the latest.
@@ -310,7 +307,7 @@ fn heard_gases(occasions: &[Occasion], mechanics: &Mechanics, latest: &GasBreath
                 rate_per_min,
                 tidal_volume_ml,
                 apparatus_ml: settings.apparatus_dead_space_ml,
-                minutes_since_change: minutes_since_change(occasions, index),
+                minutes_since_change: minutes_since_change(occasions, mechanics, index),
             })
         })
         .collect();
@@ -322,15 +319,14 @@ fn heard_gases(occasions: &[Occasion], mechanics: &Mechanics, latest: &GasBreath
 }
 
 /// Minutes from the entry that first carries the ventilation of occasion `index` to its gas.
-fn minutes_since_change(occasions: &[Occasion], index: usize) -> Option<f64> {
+fn minutes_since_change(occasions: &[Occasion], mechanics: &Mechanics, index: usize) -> Option<f64> {
     let gas = occasions.get(index)?;
-    let mut carrier = None;
+    let mut carrier: Option<crate::case::moment::Moment> = None;
     for occasion in occasions.get(..index)?.iter().rev() {
-        if !same_ventilation(&occasion.in_force, &gas.in_force) {
+        if !same_ventilation(mechanics, &occasion.in_force, &gas.in_force) {
             let drawn_at = gas.drawn_at()?;
             // The change stands in the entry after this one; in the gas's own entry it counts as settled.
-            let changed_at: Option<crate::case::moment::Moment> = carrier;
-            return changed_at.map(|changed| drawn_at.minutes_since(changed).max(0.0));
+            return carrier.map(|changed| drawn_at.minutes_since(changed).max(0.0));
         }
         carrier = occasion.at;
     }

@@ -7,7 +7,7 @@ use super::belief::{Ahead, Belief, Interval};
 use super::course::Course;
 use super::limits;
 use super::outcome::{Outcome, State};
-use super::target::{Target, profile_band_mmhg};
+use super::target::profile_band_mmhg;
 use super::trial::Dialled;
 use crate::case::fault::{Fault, Place};
 use crate::case::profile::Figures;
@@ -152,14 +152,25 @@ impl<'a> Forecaster<'a> {
 
     /// The tidal volume the patient gets, mL.
     pub fn volume(&self, dialled: &Dialled) -> Option<f64> {
-        let rate = self.effective_rate(dialled.settings.rate_per_min);
+        self.volume_at(dialled, self.effective_rate(dialled.settings.rate_per_min))
+    }
+
+    /// The tidal volume, mL, if the total rate were `rate_per_min`.
+    pub fn volume_at(&self, dialled: &Dialled, rate_per_min: f64) -> Option<f64> {
         match dialled.settings.inflation {
-            Inflation::Volume { .. } => volume_of(&self.baseline.mechanics, &dialled.settings, rate),
+            Inflation::Volume { .. } => volume_of(&self.baseline.mechanics, &dialled.settings, rate_per_min),
             Inflation::Pressure { .. } => {
-                let phases = Phases::at_rate(dialled.settings.inspiratory_time_s(), 0.0, rate)?;
+                let phases = Phases::at_rate(dialled.settings.inspiratory_time_s(), 0.0, rate_per_min)?;
                 Some(pressure_breath(dialled, phases)?.tidal_volume_ml(dialled.lung.as_ref()?))
             }
         }
+    }
+
+    /// Whether settings leave time to breathe in and out.
+    pub fn breathes(&self, dialled: &Dialled) -> bool {
+        let settings = &dialled.settings;
+        let rate = self.effective_rate(settings.rate_per_min);
+        Phases::at_rate(settings.inspiratory_time_s(), settings.pause_s(), rate).is_some()
     }
 
     const fn reading(&self) -> Reading {
@@ -388,11 +399,6 @@ impl<'a> Forecaster<'a> {
     /// The band that counts as on target where no target was typed, mmHg.
     pub fn profile_band_mmhg(&self) -> Option<[f64; 2]> {
         profile_band_mmhg(self.baseline.profile.target, self.baseline.base_excess_mmol_l)
-    }
-
-    /// The band of a target, mmHg.
-    pub const fn band_of(target: &Target) -> [f64; 2] {
-        target.band_mmhg
     }
 }
 

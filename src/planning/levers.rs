@@ -27,8 +27,8 @@ pub struct Lever {
     pub step: f64,
     /// The unit of the step.
     pub unit: &'static str,
-    /// Change of PaCO2, mmHg.
-    pub paco2_change_mmhg: f64,
+    /// Change of PaCO2, mmHg; `None` when the step cannot be dialled.
+    pub paco2_change_mmhg: Option<f64>,
     /// Change of pH.
     pub ph_change: Option<f64>,
     /// Change of driving pressure, cmH2O.
@@ -37,7 +37,7 @@ pub struct Lever {
     pub mechanical_power_change_j_min: Option<f64>,
 }
 
-/// The levers, each from the forecast of now; one that cannot be dialled is left out.
+/// The levers, each from the forecast of now; apparatus is left out where there is none.
 pub fn levers(forecaster: &Forecaster<'_>) -> Vec<Lever> {
     let now = forecaster.now();
     let Some(from) = forecaster.state(&now) else { return Vec::new() };
@@ -60,21 +60,21 @@ pub fn levers(forecaster: &Forecaster<'_>) -> Vec<Lever> {
     tries
         .into_iter()
         .filter_map(|(id, step, unit, dialled)| {
-            let to = forecaster.state(&dialled?)?;
-            Some(lever(id, step, unit, &from, &to))
+            let to = forecaster.state(&dialled?);
+            Some(lever(id, step, unit, &from, to.as_ref()))
         })
         .collect()
 }
 
-fn lever(id: &'static str, step: f64, unit: &'static str, from: &State, to: &State) -> Lever {
-    let change = |to: Option<f64>, from: Option<f64>| to.zip(from).map(|(to, from)| to - from);
+fn lever(id: &'static str, step: f64, unit: &'static str, from: &State, to: Option<&State>) -> Lever {
+    let change = |value: fn(&State) -> Option<f64>| Some(value(to?)? - value(from)?);
     Lever {
         id,
         step,
         unit,
-        paco2_change_mmhg: to.paco2_mmhg - from.paco2_mmhg,
-        ph_change: change(to.ph, from.ph),
-        driving_pressure_change_cmh2o: change(to.driving_pressure_cmh2o, from.driving_pressure_cmh2o),
-        mechanical_power_change_j_min: change(to.mechanical_power_j_min, from.mechanical_power_j_min),
+        paco2_change_mmhg: change(|state| Some(state.paco2_mmhg)),
+        ph_change: change(|state| state.ph),
+        driving_pressure_change_cmh2o: change(|state| state.driving_pressure_cmh2o),
+        mechanical_power_change_j_min: change(|state| state.mechanical_power_j_min),
     }
 }

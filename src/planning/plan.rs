@@ -12,7 +12,7 @@ use super::levers::{Lever, levers};
 use super::limits::Verdict;
 use super::outcome::{Outcome, State};
 use super::remarks;
-use super::solve::{RATES_PER_MIN, exact_rate, exact_volume, settable_rates, settable_volumes, summit_rate, volume_range};
+use super::solve::{RATES_PER_MIN, exact_rate, exact_volume, settable_rates, settable_volumes, summit_of, volume_range, Summit};
 use super::target::{Asked, Target};
 use super::trial::{Dialled, Trial};
 use crate::case::entry::Aim;
@@ -78,15 +78,6 @@ pub struct PlanLine {
 
 fn as_keys<S: serde::Serializer>(ids: &[LimitId], to: S) -> Result<S::Ok, S::Error> {
     to.collect_seq(ids.iter().map(|id| id.key()))
-}
-
-/// Where a faster rate stops clearing more.
-#[derive(Debug, Clone, Copy, PartialEq, Serialize)]
-pub struct Summit {
-    /// The rate, 1/min.
-    pub rate_per_min: f64,
-    /// The PaCO2 there, mmHg.
-    pub paco2_mmhg: f64,
 }
 
 /// The answer to `plan`.
@@ -174,10 +165,7 @@ pub fn plan(record: &Record, request: &Request) -> Result<Plan, Vec<Fault>> {
     if asked(Aim::Gentle) {
         plans.extend(solver.gentlest(&mut cautions));
     }
-    let summit = summit_rate(&forecaster, &base).and_then(|rate_per_min| {
-        let paco2_mmhg = forecaster.paco2_mmhg(&base.with_rate(rate_per_min))?;
-        Some(Summit { rate_per_min, paco2_mmhg })
-    });
+    let summit = summit_of(&forecaster, &base);
     let course = plans.first().and_then(|first| forecaster.course(&first.dialled));
     remarks::of_patient(&forecaster, record, &now, &mut cautions);
     remarks::of_trial(&forecaster, &base, &mut cautions);

@@ -8,7 +8,7 @@ use super::course::Course;
 use super::forecast::{Forecaster, HeldReadings};
 use super::gentle::{Least, NoGentle};
 use super::outcome::{Outcome, State};
-use super::plan::Summit;
+use super::solve::Summit;
 use super::target::Target;
 use super::trial::Dialled;
 use crate::case::entry::{Control, FlowPattern, Measured};

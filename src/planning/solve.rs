@@ -1,5 +1,7 @@
 //! Solving for a target: the exact rate or volume, the summit of alveolar ventilation, and the settable values.
 
+use serde::Serialize;
+
 use crate::case::entry::Control;
 use crate::case::profile::Steps;
 use crate::physiology::breath::SHORTEST_EXPIRATION_S;
@@ -8,6 +10,15 @@ use crate::physiology::root::{crossing, summit};
 use super::forecast::Forecaster;
 use super::trial::Dialled;
 use crate::case::settings::Timing;
+
+/// Where a faster rate stops clearing more.
+#[derive(Debug, Clone, Copy, PartialEq, Serialize)]
+pub struct Summit {
+    /// The rate, 1/min.
+    pub rate_per_min: f64,
+    /// The PaCO2 there, mmHg.
+    pub paco2_mmhg: f64,
+}
 
 /// Set rates a plan may choose, 1/min: what adult ventilators offer, common practice.
 pub const RATES_PER_MIN: [f64; 2] = [4.0, 60.0];
@@ -65,16 +76,17 @@ fn fastest_rate(dialled: &Dialled) -> f64 {
     }
 }
 
-/// Alveolar ventilation over (1 − f), mL/min, at a set rate; `None` where nothing is delivered.
+/// Alveolar ventilation over (1 − f), mL/min, if every breath came at `rate_per_min`; `None` where nothing is delivered.
 fn cleared(forecaster: &Forecaster<'_>, dialled: &Dialled, rate_per_min: f64) -> Option<f64> {
     let at = dialled.with_rate(rate_per_min);
-    let room = forecaster.volume(&at)? - forecaster.series_under(&at.settings);
-    Some(forecaster.effective_rate(rate_per_min) * room)
+    let room = forecaster.volume_at(&at, rate_per_min)? - forecaster.series_under(&at.settings);
+    Some(rate_per_min * room)
 }
 
 /// Where alveolar ventilation is highest as the rate rises in pressure control, 1/min (unrounded); `None` in volume
-/// control, without resistance, or when there is no summit before expiration runs out.
-pub fn summit_rate(forecaster: &Forecaster<'_>, dialled: &Dialled) -> Option<f64> {
+/// control, without resistance, or when there is no summit before expiration runs out. The patient's own rate is left
+/// out of account: the summit is the lung's and the ventilator's.
+fn summit_rate(forecaster: &Forecaster<'_>, dialled: &Dialled) -> Option<f64> {
     let lung = dialled.lung?;
     if dialled.settings.control() != Control::Pressure
         || lung.inspiratory_resistance.is_none()
@@ -92,14 +104,22 @@ pub fn summit_rate(forecaster: &Forecaster<'_>, dialled: &Dialled) -> Option<f64
     Some(summit(cleared, at(best - 1), at(best + 1)))
 }
 
+/// The summit of alveolar ventilation: its rate, 1/min, and the PaCO2 there, mmHg.
+pub fn summit_of(forecaster: &Forecaster<'_>, dialled: &Dialled) -> Option<Summit> {
+    let rate_per_min = summit_rate(forecaster, dialled)?;
+    let most = cleared(forecaster, dialled, rate_per_min).filter(|ml_min| *ml_min > 0.0)?;
+    Some(Summit { rate_per_min, paco2_mmhg: forecaster.needed_ml_min(1.0, dialled.co2_factor) / most })
+}
+
 /// The unrounded set rate, 1/min, that brings PaCO2 to `target_mmhg`: closed form where the volume does not hang on the
-/// rate, else the root on the rising side of the summit. `None` when there is none or it lies below the patient's own.
+/// rate, else the root on the rising side of the summit. `None` when there is none, when expiration runs out before it, or
+/// when it lies below the patient's own.
 pub fn exact_rate(forecaster: &Forecaster<'_>, dialled: &Dialled, target_mmhg: f64) -> Option<f64> {
     let needed = forecaster.needed_ml_min(target_mmhg, dialled.co2_factor);
     let rate = if volume_hangs_on_rate(dialled) {
         let top = summit_rate(forecaster, dialled)
             .unwrap_or_else(|| fastest_rate(dialled) * (1.0 - 1e-9));
-        let own = forecaster.effective_rate(SLOWEST_PER_MIN);
+        let own = forecaster.effective_rate(SLOWEST_PER_MIN); // below it the patient breathes on
         if own >= top {
             return None;
         }
@@ -111,7 +131,7 @@ pub fn exact_rate(forecaster: &Forecaster<'_>, dialled: &Dialled, target_mmhg: f
         }
         needed / room
     };
-    (rate >= forecaster.effective_rate(0.0)).then_some(rate)
+    (rate >= forecaster.effective_rate(0.0) && forecaster.breathes(&dialled.with_rate(rate))).then_some(rate)
 }
 
 fn volume_hangs_on_rate(dialled: &Dialled) -> bool {
@@ -119,14 +139,16 @@ fn volume_hangs_on_rate(dialled: &Dialled) -> bool {
         && dialled.lung.is_some_and(|lung| lung.inspiratory_resistance.is_some())
 }
 
-/// The unrounded set volume (mL) or inspiratory pressure (cmH2O) that brings PaCO2 to `target_mmhg`, rate kept.
+/// The unrounded set volume (mL) or inspiratory pressure (cmH2O) that brings PaCO2 to `target_mmhg`, rate kept;
+/// `None` when there is none or when it leaves no time to breathe out.
 pub fn exact_volume(forecaster: &Forecaster<'_>, dialled: &Dialled, target_mmhg: f64) -> Option<f64> {
     let rate = forecaster.effective_rate(dialled.settings.rate_per_min);
     let needed = forecaster.needed_ml_min(target_mmhg, dialled.co2_factor);
     let tidal = forecaster.series_under(&dialled.settings) + needed / rate;
     // Both controls deliver in proportion to what is dialled.
     let per_unit = forecaster.volume(&dialled.with_volume(1.0))?;
-    (tidal > 0.0 && per_unit > 0.0).then(|| tidal / per_unit)
+    let exact = (tidal > 0.0 && per_unit > 0.0).then(|| tidal / per_unit)?;
+    forecaster.breathes(&dialled.with_volume(exact)).then_some(exact)
 }
 
 #[cfg(test)]

@@ -125,7 +125,7 @@ impl Trial {
                 ));
             }
             (Control::Volume, Control::Pressure) => self.to_pressure(&dialled, forecaster)?,
-            (Control::Pressure, Control::Volume) => self.to_volume(&dialled, forecaster)?,
+            (Control::Pressure, Control::Volume) => self.to_volume(dialled.settings, forecaster)?,
             _ => self.same_control(dialled.settings)?,
         };
         dialled.settings = settings;
@@ -229,21 +229,18 @@ impl Trial {
         Ok(settings)
     }
 
-    /// Pressure to volume control: the volume given, or the one that the pressure moves at the trial's rate and timing.
-    fn to_volume(&self, dialled: &Dialled, forecaster: &Forecaster<'_>) -> Result<Settings, Fault> {
+    /// Pressure to volume control: the volume given, or the one the patient gets now.
+    fn to_volume(&self, mut settings: Settings, forecaster: &Forecaster<'_>) -> Result<Settings, Fault> {
         if self.inspiratory_pressure_cmh2o.is_some() {
             return Err(wrong_control("inspiratory_pressure", "volume", "--tidal-volume"));
         }
-        let mut settings = dialled.settings;
-        let flow_held = matches!(settings.timing, Timing::Flow(_));
-        let moved = if flow_held { None } else { forecaster.volume(dialled) };
-        let volume = self
-            .tidal_volume_ml
-            .or_else(|| moved.map(|moved| moved / forecaster.baseline().mechanics.volume_per_set));
+        let per_set = forecaster.baseline().mechanics.volume_per_set;
+        let kept = forecaster.volume(&forecaster.now()).map(|moved| moved / per_set);
+        let volume = self.tidal_volume_ml.or(kept);
         let Some(tidal_volume_ml) = volume else {
             return Err(Fault::new(
                 [flag("control")],
-                "the tidal volume to keep is not known at this rate and timing",
+                "the tidal volume to keep is not known",
                 "Give it, for example --tidal-volume 400.",
             ));
         };

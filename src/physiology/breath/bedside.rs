@@ -170,6 +170,26 @@ pub fn compliance_from_volume(
     crossing(miss, apparent, high)
 }
 
+/// Compliance, mL/cmH2O, from the tidal volume that a pressure moves when auto-PEEP was measured: the lung starts at
+/// auto-PEEP, so it is the root of `VT = C·(ΔPi − auto)·(1 − a)`. `None` when `VT/(ΔPi − auto) ≥ Ti/RI`.
+pub fn compliance_above_auto_peep(
+    tidal_volume_ml: f64,
+    pressure_above_auto: f64,
+    inspiratory_resistance: f64,
+    inspiratory_s: f64,
+) -> Option<f64> {
+    let apparent = tidal_volume_ml / pressure_above_auto;
+    if pressure_above_auto <= 0.0 || apparent >= 1000.0 * inspiratory_s / inspiratory_resistance {
+        return None;
+    }
+    let miss = |c: f64| c * -libm::expm1(-inspiratory_s / (inspiratory_resistance * c / 1000.0)) - apparent;
+    let mut high = apparent * 2.0;
+    while miss(high) < 0.0 && high < 1e9 {
+        high *= 2.0;
+    }
+    crossing(miss, apparent, high)
+}
+
 #[cfg(test)]
 mod tests {
     use super::super::{pressure_control::PressureBreath, volume_control::VolumeBreath};

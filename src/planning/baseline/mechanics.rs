@@ -339,9 +339,18 @@ impl Mechanics {
             if !better(Worth::Volume) {
                 return Ok(());
             }
-            let Some(compliance) =
-                bedside::compliance_from_volume(volume_ml, pressure, inspiratory, expiratory, &phases)
-            else {
+            let found = match at.auto_peep() {
+                Some(auto) => bedside::compliance_above_auto_peep(
+                    volume_ml,
+                    pressure - auto,
+                    inspiratory,
+                    phases.inspiratory_s,
+                ),
+                None => {
+                    bedside::compliance_from_volume(volume_ml, pressure, inspiratory, expiratory, &phases)
+                }
+            };
+            let Some(compliance) = found else {
                 return Err(Fault::new(
                     [
                         Place::in_entry(number, "measured", "exhaled_tidal_volume"),
