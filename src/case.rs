@@ -1,10 +1,12 @@
 //! The patient's record: what a person charts, read from TOML or flags, checked once, and the profile of limits.
 
 mod amend;
+mod contradiction;
 pub mod entry;
 pub mod fault;
 mod inherit;
 pub mod moment;
+mod plausible;
 pub mod profile;
 pub mod record;
 pub mod settings;
