@@ -17,4 +17,5 @@
 //! clinician decide.
 
 pub mod case;
+pub mod cli;
 pub mod quantity;
