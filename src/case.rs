@@ -1,11 +1,17 @@
 //! The patient's record: what a person charts, read from TOML or flags, checked once, and the profile of limits.
 
 mod amend;
+mod contradiction;
 pub mod entry;
 pub mod fault;
+pub mod file;
 mod inherit;
 pub mod moment;
+mod plausible;
+pub mod presets;
+pub mod problem;
 pub mod profile;
+pub mod read;
 pub mod record;
 pub mod settings;
 pub mod slots;

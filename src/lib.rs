@@ -4,11 +4,11 @@
 //!
 //! | layer | what it holds |
 //! | --- | --- |
-//! | `cli` | the command line |
-//! | `note` | faces on paper: text, JSON |
-//! | `planning` | baseline, forecast, limits, plan, levers, belief, course: what a clinician asks |
+//! | [`cli`] | the command line |
+//! | [`note`] | faces on paper: text, JSON |
+//! | [`planning`] | baseline, forecast, limits, plan, levers, belief, course: what a clinician asks |
 //! | [`case`] | the patient's record: types, TOML in, profiles |
-//! | `physiology` | pure formulas, one file a topic |
+//! | [`physiology`] | pure formulas, one file a topic |
 //! | [`quantity`] | units: small types, the table of inputs, reading and showing |
 //!
 //! The engine (quantity, physiology, planning) knows no file, no screen, no clock and no dice.
@@ -17,6 +17,8 @@
 //! clinician decide.
 
 pub mod case;
+pub mod cli;
+pub mod note;
 pub mod physiology;
 pub mod planning;
 pub mod quantity;

@@ -1,7 +1,10 @@
 //! Corrections: an entry that amends another replaces its keys in all computing, and both stay on file.
 
-use super::entry::{Control, Entry, Gas, Measured, SettingsChange, Weaning};
+use std::collections::BTreeMap;
+
+use super::entry::{Control, Entry};
 use super::fault::{Fault, Place};
+use super::slots::ENTRY;
 
 /// An entry that counts, with the corrections that name it applied.
 #[derive(Debug, Clone, PartialEq)]
@@ -10,6 +13,15 @@ pub(super) struct Corrected {
     pub number: usize,
     /// The entry, corrections applied in file order.
     pub entry: Entry,
+    /// Which entry each corrected value stands in, by table and key.
+    from: BTreeMap<(&'static str, &'static str), usize>,
+}
+
+impl Corrected {
+    /// Where a value of this entry stands in the file: in the correction when it was corrected.
+    pub(super) fn place(&self, table: &'static str, key: &'static str) -> Place {
+        Place::in_entry(self.from.get(&(table, key)).copied().unwrap_or(self.number), table, key)
+    }
 }
 
 /// The entries that count, in file order, and every correction that cannot be made.
@@ -20,14 +32,14 @@ pub(super) fn corrected(entries: &[Entry]) -> (Vec<Corrected>, Vec<Fault>) {
     for (number, entry) in (1..).zip(entries) {
         let Some(amends) = entry.amends else {
             roots.push(number);
-            standing.push(Corrected { number, entry: entry.clone() });
+            standing.push(Corrected { number, entry: entry.clone(), from: BTreeMap::new() });
             continue;
         };
         // An amendment of an amendment corrects the entry at the root of both.
         let root = amends.checked_sub(1).and_then(|index| roots.get(index)).copied();
         roots.push(root.unwrap_or(number));
         match root.and_then(|root| standing.iter_mut().find(|held| held.number == root)) {
-            Some(held) => amend(&mut held.entry, entry),
+            Some(held) => amend(held, number, entry),
             None => faults.push(astray(number, amends, entries.len())),
         }
     }
@@ -51,101 +63,71 @@ fn astray(number: usize, amends: usize, count: usize) -> Fault {
 }
 
 /// Key by key within settings, measured, gas and weaning; a trial or a plan is replaced whole; the time stays.
-fn amend(held: &mut Entry, typed: &Entry) {
-    amend_settings(&mut held.settings, &typed.settings);
-    amend_measured(&mut held.measured, &typed.measured);
-    amend_gas(&mut held.gas, &typed.gas);
-    amend_weaning(&mut held.weaning, &typed.weaning);
-    replace(&mut held.trial, typed.trial.as_ref());
-    replace(&mut held.plan, typed.plan.as_ref());
-}
-
-fn replace<T: Clone>(held: &mut Option<T>, typed: Option<&T>) {
-    if let Some(value) = typed {
-        *held = Some(value.clone());
+fn amend(held: &mut Corrected, number: usize, typed: &Entry) {
+    make_way(&mut held.entry, typed);
+    for slot in &ENTRY {
+        if let Some(value) = (slot.get)(typed) {
+            *(slot.open)(&mut held.entry) = Some(value);
+            let input = slot.key.input();
+            held.from.insert((input.table, input.name), number);
+        }
+    }
+    let Corrected { entry, from, .. } = held;
+    let mut replace = |table: &'static str, key: &'static str, given: bool| {
+        if given {
+            from.insert((table, key), number);
+        }
+        given
+    };
+    if replace("settings", "control", typed.settings.control.is_some()) {
+        entry.settings.control = typed.settings.control;
+    }
+    if replace("settings", "flow_pattern", typed.settings.flow_pattern.is_some()) {
+        entry.settings.flow_pattern = typed.settings.flow_pattern;
+    }
+    if replace("gas", "drawn_at", typed.gas.drawn_at.is_some()) {
+        entry.gas.drawn_at = typed.gas.drawn_at;
+    }
+    if replace("trial", "", typed.trial.is_some()) {
+        entry.trial.clone_from(&typed.trial);
+    }
+    if replace("plan", "", typed.plan.is_some()) {
+        entry.plan.clone_from(&typed.plan);
     }
 }
 
-fn amend_settings(held: &mut SettingsChange, typed: &SettingsChange) {
+/// Takes away what the correction makes void without naming it.
+fn make_way(held: &mut Entry, typed: &Entry) {
+    let settings = &mut held.settings;
+    let timing = &typed.settings;
     // The three timing keys say one thing in three ways: naming one replaces whichever stood there.
-    if typed.inspiratory_time_s.or(typed.flow_l_min).or(typed.ratio).is_some() {
-        held.inspiratory_time_s = None;
-        held.flow_l_min = None;
-        held.ratio = None;
+    if timing.inspiratory_time_s.or(timing.flow_l_min).or(timing.ratio).is_some() {
+        settings.inspiratory_time_s = None;
+        settings.flow_l_min = None;
+        settings.ratio = None;
     }
     // A corrected control takes away what only the mistaken one could carry.
-    match typed.control {
-        Some(Control::Volume) => held.inspiratory_pressure_cmh2o = None,
+    match typed.settings.control {
+        Some(Control::Volume) => settings.inspiratory_pressure_cmh2o = None,
         Some(Control::Pressure | Control::Support) => {
-            held.tidal_volume_ml = None;
-            held.flow_l_min = None;
-            held.pause_s = None;
-            held.flow_pattern = None;
+            settings.tidal_volume_ml = None;
+            settings.flow_l_min = None;
+            settings.pause_s = None;
+            settings.flow_pattern = None;
         }
         None => {}
     }
-    replace(&mut held.control, typed.control.as_ref());
-    replace(&mut held.rate_per_min, typed.rate_per_min.as_ref());
-    replace(&mut held.tidal_volume_ml, typed.tidal_volume_ml.as_ref());
-    replace(&mut held.inspiratory_pressure_cmh2o, typed.inspiratory_pressure_cmh2o.as_ref());
-    replace(&mut held.peep_cmh2o, typed.peep_cmh2o.as_ref());
-    replace(&mut held.fio2, typed.fio2.as_ref());
-    replace(&mut held.inspiratory_time_s, typed.inspiratory_time_s.as_ref());
-    replace(&mut held.flow_l_min, typed.flow_l_min.as_ref());
-    replace(&mut held.ratio, typed.ratio.as_ref());
-    replace(&mut held.pause_s, typed.pause_s.as_ref());
-    replace(&mut held.flow_pattern, typed.flow_pattern.as_ref());
-    replace(&mut held.apparatus_dead_space_ml, typed.apparatus_dead_space_ml.as_ref());
-}
-
-fn amend_measured(held: &mut Measured, typed: &Measured) {
     // Total PEEP and auto-PEEP are one reading in two ways.
-    if typed.total_peep_cmh2o.or(typed.auto_peep_cmh2o).is_some() {
-        held.total_peep_cmh2o = None;
-        held.auto_peep_cmh2o = None;
+    if typed.measured.total_peep_cmh2o.or(typed.measured.auto_peep_cmh2o).is_some() {
+        held.measured.total_peep_cmh2o = None;
+        held.measured.auto_peep_cmh2o = None;
     }
-    replace(&mut held.total_rate_per_min, typed.total_rate_per_min.as_ref());
-    replace(&mut held.exhaled_tidal_volume_ml, typed.exhaled_tidal_volume_ml.as_ref());
-    replace(&mut held.minute_ventilation_l_min, typed.minute_ventilation_l_min.as_ref());
-    replace(&mut held.plateau_cmh2o, typed.plateau_cmh2o.as_ref());
-    replace(&mut held.peak_cmh2o, typed.peak_cmh2o.as_ref());
-    replace(&mut held.total_peep_cmh2o, typed.total_peep_cmh2o.as_ref());
-    replace(&mut held.auto_peep_cmh2o, typed.auto_peep_cmh2o.as_ref());
-    replace(&mut held.mean_airway_pressure_cmh2o, typed.mean_airway_pressure_cmh2o.as_ref());
-    replace(&mut held.compliance_ml_cmh2o, typed.compliance_ml_cmh2o.as_ref());
-    replace(&mut held.resistance_cmh2o_s_l, typed.resistance_cmh2o_s_l.as_ref());
-    replace(&mut held.expiratory_resistance_cmh2o_s_l, typed.expiratory_resistance_cmh2o_s_l.as_ref());
-    replace(&mut held.circuit_compliance_ml_cmh2o, typed.circuit_compliance_ml_cmh2o.as_ref());
-    replace(&mut held.end_tidal_co2_mmhg, typed.end_tidal_co2_mmhg.as_ref());
-    replace(&mut held.mixed_expired_co2_mmhg, typed.mixed_expired_co2_mmhg.as_ref());
-    replace(&mut held.dead_space_fraction, typed.dead_space_fraction.as_ref());
-    replace(&mut held.co2_production_ml_min, typed.co2_production_ml_min.as_ref());
-    replace(&mut held.temperature_c, typed.temperature_c.as_ref());
-    replace(&mut held.spo2, typed.spo2.as_ref());
-}
-
-fn amend_gas(held: &mut Gas, typed: &Gas) {
-    replace(&mut held.drawn_at, typed.drawn_at.as_ref());
-    replace(&mut held.ph, typed.ph.as_ref());
-    replace(&mut held.paco2_mmhg, typed.paco2_mmhg.as_ref());
-    replace(&mut held.pao2_mmhg, typed.pao2_mmhg.as_ref());
-    replace(&mut held.bicarbonate_mmol_l, typed.bicarbonate_mmol_l.as_ref());
-}
-
-fn amend_weaning(held: &mut Weaning, typed: &Weaning) {
-    replace(&mut held.spontaneous_rate_per_min, typed.spontaneous_rate_per_min.as_ref());
-    replace(&mut held.spontaneous_tidal_volume_ml, typed.spontaneous_tidal_volume_ml.as_ref());
-    replace(&mut held.inspiratory_pressure_max_cmh2o, typed.inspiratory_pressure_max_cmh2o.as_ref());
-    replace(&mut held.vital_capacity_ml, typed.vital_capacity_ml.as_ref());
-    replace(&mut held.occlusion_pressure_cmh2o, typed.occlusion_pressure_cmh2o.as_ref());
-    replace(&mut held.spo2_fraction_on, typed.spo2_fraction_on.as_ref());
-    replace(&mut held.heart_rate_per_min, typed.heart_rate_per_min.as_ref());
-    replace(&mut held.systolic_pressure_mmhg, typed.systolic_pressure_mmhg.as_ref());
 }
 
 #[cfg(test)]
 mod tests {
     use super::*;
+    use crate::case::entry::SettingsChange;
 
     fn rate(rate_per_min: f64, amends: Option<usize>) -> Entry {
         let settings = SettingsChange { rate_per_min: Some(rate_per_min), ..SettingsChange::default() };
@@ -189,6 +171,8 @@ mod tests {
         let (standing, _) = corrected(&[first, second]);
         let held = &standing[0].entry;
         assert_eq!((held.settings.flow_l_min, held.settings.ratio), (None, Some(2.0)));
+        assert_eq!(standing[0].place("settings", "ratio"), Place::in_entry(2, "settings", "ratio"));
+        assert_eq!(standing[0].place("settings", "rate"), Place::in_entry(1, "settings", "rate"));
         assert_eq!((held.measured.auto_peep_cmh2o, held.measured.total_peep_cmh2o), (None, Some(12.0)));
     }
 }

@@ -120,7 +120,7 @@ impl Carried {
         let Some(control) = self.control else { return Vec::new() };
         let typed = &entry.settings;
         let fault = |key: &'static str, message: String, help: &str| {
-            Fault::new([place(key), control.place], message, help)
+            Fault::new([place(key), control.place, place("control")], message, help)
         };
         let mut faults = Vec::new();
         if control.value == Control::Volume {

@@ -34,3 +34,10 @@ impl Ord for Moment {
         self.instant.cmp(&other.instant)
     }
 }
+
+impl std::fmt::Display for Moment {
+    /// The wall clock where it was charted: `2026-03-09 08:10`.
+    fn fmt(&self, out: &mut std::fmt::Formatter<'_>) -> std::fmt::Result {
+        write!(out, "{}", self.offset.to_datetime(self.instant).strftime("%Y-%m-%d %H:%M"))
+    }
+}

@@ -1,10 +1,12 @@
 //! A record: one patient's entries, checked as a whole. The engine takes nothing else.
 
 use super::amend::{Corrected, corrected};
-use super::entry::{Control, Entry, Patient};
+use super::contradiction::contradictions;
+use super::entry::{Entry, Patient};
 use super::fault::{Fault, Place};
 use super::inherit::Carried;
 use super::moment::Moment;
+use super::plausible::implausible;
 use super::profile::Profile;
 use super::settings::InForce;
 
@@ -61,27 +63,23 @@ pub struct Record {
 }
 
 impl Record {
-    /// Checks every entry against itself and the record as a whole: corrections are applied, entries put in order
-    /// of time, settings inherited.
+    /// Checks every value against the table of inputs, every entry against itself and the record as a whole:
+    /// corrections are applied, entries put in order of time, settings inherited.
     ///
     /// # Errors
     /// Every fault found, those of the patient first, then entry by entry.
     pub fn check(draft: Draft) -> Result<Self, Vec<Fault>> {
-        let mut faults = Vec::new();
-        faults.extend(two_pressures(&draft.patient));
-        faults.extend(undated(&draft.entries));
-        let (mut corrected, astray) = corrected(&draft.entries);
-        faults.extend(astray);
-        // Stable: entries of one instant keep the order of the file.
-        corrected.sort_by_key(|held| held.entry.at);
-        let mut carried = Carried::default();
-        let mut occasions = Vec::with_capacity(corrected.len());
-        for Corrected { number, entry } in corrected {
-            faults.extend(carried.advance(&entry, |key| Place::in_entry(number, "settings", key)));
-            faults.extend(without_peep(number, &entry, &carried));
-            let at = entry.at;
-            occasions.push(Occasion { number, entry, in_force: carried.in_force(), at });
-        }
+        Self::check_beside(draft, &[])
+    }
+
+    /// As [`check`](Self::check), where the values at `unread` were given but could not be read: what would follow
+    /// from their absence alone is no fault of its own.
+    pub(super) fn check_beside(draft: Draft, unread: &[Place]) -> Result<Self, Vec<Fault>> {
+        let mut faults = implausible(&draft);
+        let mut doubtful: Vec<Place> = faults.iter().flat_map(|fault| fault.places.iter().copied()).collect();
+        doubtful.extend(unread);
+        let (occasions, found) = standing(&draft);
+        faults.extend(found.into_iter().filter(|fault| !rests_on(fault, &doubtful)));
         faults.sort_by_key(|fault| fault.places.first().and_then(|place| place.entry));
         if faults.is_empty() { Ok(Self { draft, occasions }) } else { Err(faults) }
     }
@@ -117,6 +115,43 @@ impl Record {
     }
 }
 
+/// Whether a fault draws on a value in doubt. Settings are inherited, so one in doubt casts doubt on all that follow.
+fn rests_on(fault: &Fault, doubtful: &[Place]) -> bool {
+    fault.places.iter().any(|place| {
+        doubtful.iter().any(|doubt| {
+            let same_key = (doubt.table, doubt.key) == (place.table, place.key);
+            same_key && (doubt.entry == place.entry || doubt.table == "settings")
+        })
+    })
+}
+
+/// The entries that count with the settings in force, and every fault between values.
+fn standing(draft: &Draft) -> (Vec<Occasion>, Vec<Fault>) {
+    let mut faults = Vec::new();
+    faults.extend(two_pressures(&draft.patient));
+    faults.extend(undated(&draft.entries));
+    let (mut corrected, astray) = corrected(&draft.entries);
+    faults.extend(astray);
+    // Stable: entries of one instant keep the order of the file.
+    corrected.sort_by_key(|held| held.entry.at);
+    let mut carried = Carried::default();
+    let mut occasions = Vec::with_capacity(corrected.len());
+    for held in corrected {
+        faults.extend(carried.advance(&held.entry, |key| held.place("settings", key)));
+        let in_force = carried.in_force();
+        for fault in contradictions(&held, &carried, &in_force) {
+            // Settings stay in force: what they alone contradict is said where it comes about, not in every entry after.
+            if !faults.contains(&fault) {
+                faults.push(fault);
+            }
+        }
+        let Corrected { number, entry, .. } = held;
+        let at = entry.at;
+        occasions.push(Occasion { number, entry, in_force, at });
+    }
+    (occasions, faults)
+}
+
 fn two_pressures(patient: &Patient) -> Option<Fault> {
     (patient.barometric_pressure_mmhg.is_some() && patient.altitude_m.is_some()).then(|| {
         Fault::new(
@@ -146,46 +181,6 @@ fn undated(entries: &[Entry]) -> Vec<Fault> {
         }
     }
     faults
-}
-
-/// An airway pressure means nothing until PEEP is known.
-fn without_peep(number: usize, entry: &Entry, carried: &Carried) -> Option<Fault> {
-    if carried.peep_cmh2o.is_some() {
-        return None;
-    }
-    let measured = &entry.measured;
-    let pressures = [
-        ("measured", "plateau", measured.plateau_cmh2o),
-        ("measured", "peak", measured.peak_cmh2o),
-        ("measured", "total_peep", measured.total_peep_cmh2o),
-        ("measured", "auto_peep", measured.auto_peep_cmh2o),
-        ("measured", "mean_airway_pressure", measured.mean_airway_pressure_cmh2o),
-        ("measured", "compliance", measured.compliance_ml_cmh2o),
-    ];
-    let mut charted: Vec<Place> = pressures
-        .into_iter()
-        .filter(|(_, _, value)| value.is_some())
-        .map(|(table, key, _)| Place::in_entry(number, table, key))
-        .collect();
-    let says = if let Some(first) = charted.first() {
-        format!("{} is charted, and no PEEP is in force", first.key)
-    } else if entry.settings.control == Some(Control::Pressure) {
-        charted.push(Place::in_entry(number, "settings", "control"));
-        "pressure control is set, and no PEEP is in force".to_owned()
-    } else if carried.control.is_some_and(|held| held.value == Control::Pressure)
-        && entry.settings.inspiratory_pressure_cmh2o.is_some()
-    {
-        charted.push(Place::in_entry(number, "settings", "inspiratory_pressure"));
-        "an inspiratory pressure is set, and no PEEP is in force".to_owned()
-    } else {
-        return None;
-    };
-    charted.push(Place::in_entry(number, "settings", "peep"));
-    Some(Fault::new(
-        charted,
-        says,
-        "add the set PEEP under settings, in cmH2O: peep = 8 (peep = 0 when there is none)",
-    ))
 }
 
 #[cfg(test)]

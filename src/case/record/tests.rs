@@ -3,7 +3,7 @@
 use jiff::{Timestamp, tz::Offset};
 
 use super::*;
-use crate::case::entry::{FlowPattern, SettingsChange};
+use crate::case::entry::{Control, FlowPattern, SettingsChange};
 use crate::case::profile::{Band, Steps};
 use crate::case::settings::{Inflation, Settings, Timing};
 

@@ -1,0 +1,141 @@
+//! The lines that say who the patient is, what the gas says, and where the numbers come from.
+
+use super::face::Face;
+use crate::case::entry::{Airway, Sex};
+use crate::case::record::Record;
+use crate::planning::answer::BaselineReport;
+use crate::planning::baseline::gas_exchange::Co2Evidence;
+use crate::planning::baseline::mechanics::TrappingEvidence;
+use crate::quantity::unit::Dimension;
+
+/// PaCO2 above this is hypoventilation for the CO2 made, mmHg: common practice.
+const HYPOVENTILATION_ABOVE_MMHG: f64 = 45.0;
+/// PaCO2 below this is hyperventilation for the CO2 made, mmHg: common practice.
+const HYPERVENTILATION_BELOW_MMHG: f64 = 35.0;
+
+/// "Bed 3 · female 158 cm, 50.6 kg predicted, tube · lung-protective"
+pub fn patient(record: &Record, predicted_weight_kg: Option<f64>, face: Face) -> String {
+    let mut parts = Vec::new();
+    if !record.label().is_empty() {
+        parts.push(record.label().to_owned());
+    }
+    let patient = record.patient();
+    let mut body = Vec::new();
+    let sex = patient.sex.map(|sex| match sex {
+        Sex::Female => "female",
+        Sex::Male => "male",
+    });
+    let height = patient.height_cm.map(|cm| format!("{} cm", face.value(cm, Dimension::Length)));
+    let who: Vec<String> = sex.map(str::to_owned).into_iter().chain(height).collect();
+    if !who.is_empty() {
+        body.push(who.join(" "));
+    }
+    body.push(predicted_weight_kg.map_or_else(
+        || "predicted weight unknown".to_owned(),
+        |kg| format!("{} kg predicted", face.value(kg, Dimension::Mass)),
+    ));
+    body.push(
+        match patient.airway {
+            Some(Airway::Native) => "native airway",
+            Some(Airway::Tube) => "tube",
+            Some(Airway::Tracheostomy) => "tracheostomy",
+            None => "tube (assumed)",
+        }
+        .to_owned(),
+    );
+    parts.push(body.join(", "));
+    parts.push(record.profile().name.clone());
+    parts.join(face.dot())
+}
+
+/// The latest gas in one line, and what its PaCO2 means.
+pub fn gas(record: &Record, baseline: &BaselineReport, face: Face) -> Vec<String> {
+    let latest = record
+        .occasions()
+        .iter()
+        .filter(|occasion| occasion.entry.gas.paco2_mmhg.is_some())
+        .max_by_key(|occasion| occasion.drawn_at());
+    let Some(occasion) = latest else { return Vec::new() };
+    let gas = &occasion.entry.gas;
+    let mut parts = Vec::new();
+    let drawn = occasion.drawn_at().map(|at| format!("gas {at}"));
+    parts.push(drawn.unwrap_or_else(|| "gas".to_owned()));
+    parts.push(gas.ph.map_or_else(
+        || "pH unknown".to_owned(),
+        |ph| format!("pH {}", face.value(ph, Dimension::Ph)),
+    ));
+    let paco2 = gas.paco2_mmhg.unwrap_or_default();
+    parts.push(format!("PaCO2 {}", face.gas(paco2)));
+    if let Some(bicarbonate) = baseline.bicarbonate_mmol_l {
+        parts.push(format!("HCO3 {} mmol/L", face.value(bicarbonate, Dimension::Concentration)));
+    }
+    if let Some(ratio) = baseline.pao2_fio2_mmhg {
+        parts.push(format!("PaO2/FiO2 {}", face.gas(ratio)));
+    }
+    let bound = |mmhg: f64| face.gas(mmhg);
+    let meaning = if paco2 > HYPOVENTILATION_ABOVE_MMHG {
+        format!(
+            "Hypoventilation for the CO2 made: PaCO2 above {}, however fast the breathing.",
+            bound(HYPOVENTILATION_ABOVE_MMHG)
+        )
+    } else if paco2 < HYPERVENTILATION_BELOW_MMHG {
+        format!("Hyperventilation for the CO2 made: PaCO2 below {}.", bound(HYPERVENTILATION_BELOW_MMHG))
+    } else {
+        format!(
+            "PaCO2 within {}{}{}: ventilation fits the CO2 made.",
+            face.value(HYPERVENTILATION_BELOW_MMHG, Dimension::GasPressure),
+            face.dash(),
+            bound(HYPOVENTILATION_ABOVE_MMHG)
+        )
+    };
+    vec![parts.join(face.dot()), meaning]
+}
+
+/// Where the numbers come from, one line each.
+pub fn origins(baseline: &BaselineReport, face: Face) -> Vec<String> {
+    let mut lines = Vec::new();
+    let output = face.known(baseline.co2_production_ml_min, Dimension::GasOutput);
+    let how = match baseline.co2_evidence {
+        Co2Evidence::DeadSpace => "from the measured dead space",
+        Co2Evidence::Co2Production => "measured",
+        Co2Evidence::EndTidal => "from end-tidal CO2, airway dead space by rule",
+        Co2Evidence::Estimated if baseline.co2_production_ml_min.is_some() => "estimated",
+        Co2Evidence::Estimated => "no weight to estimate it from",
+    };
+    lines.push(format!("CO2 output {output} mL/min ({how})"));
+    let share = baseline.dead_space_fraction.map_or_else(
+        || "VD/VT unknown".to_owned(),
+        |fraction| format!("VD/VT {}", face.value(fraction, Dimension::Fraction)),
+    );
+    let series = face.value(baseline.series_dead_space_ml, Dimension::Volume);
+    let fraction = baseline.alveolar_dead_space_fraction.map_or_else(
+        || "alveolar part unknown".to_owned(),
+        |f| format!("{:.0} % of the rest alveolar", f * 100.0),
+    );
+    lines.push(format!("{share}: {series} mL airway and apparatus, {fraction}"));
+    let compliance = face.known(baseline.compliance_ml_cmh2o, Dimension::Compliance);
+    let inspiratory = face.known(baseline.inspiratory_resistance_cmh2o_s_l, Dimension::Resistance);
+    let expiratory = face.known(baseline.expiratory_resistance_cmh2o_s_l, Dimension::Resistance);
+    let trapping = match baseline.trapping_evidence {
+        TrappingEvidence::Measured => " (measured)",
+        TrappingEvidence::Given => " (given)",
+        TrappingEvidence::Assumed => " (assumed equal)",
+        TrappingEvidence::Unknown => "",
+    };
+    lines.push(format!("Respiratory-system compliance {compliance} mL/cmH2O"));
+    lines.push(format!(
+        "Resistance {inspiratory} cmH2O{}s/L in, {expiratory} out{trapping}",
+        if face.ascii { "-" } else { "·" }
+    ));
+    if let Some(ratio) = baseline.ventilatory_ratio {
+        lines.push(format!("Ventilatory ratio {} (about 1 in health)", face.value(ratio, Dimension::Number)));
+    }
+    if let Some(difference) = baseline.alveolar_arterial_po2_mmhg {
+        lines.push(format!(
+            "Alveolar{}arterial PO2 difference {}; PaO2 is not forecast",
+            face.dash(),
+            face.gas(difference)
+        ));
+    }
+    lines
+}

@@ -1,0 +1,183 @@
+//! A plan as plain text that fits 80 columns and reads at a glance.
+
+use super::columns::{Column, Moved, table};
+use super::face::{Face, ascii};
+use super::{SAFETY, course_line, patient_lines};
+use crate::case::record::Record;
+use crate::planning::baseline::mechanics::TrappingEvidence;
+use crate::planning::caution::Caution;
+use crate::planning::levers::Lever;
+use crate::planning::plan::{Plan, PlanLine};
+use crate::quantity::unit::Dimension;
+
+/// The plan as text.
+pub fn of(plan: &Plan, record: &Record, face: Face) -> String {
+    let mut lines = Vec::new();
+    lines.push(patient_lines::patient(record, plan.baseline.predicted_weight_kg, face));
+    lines.extend(patient_lines::gas(record, &plan.baseline, face));
+    lines.push(goal(plan, record, face));
+    if plan.now.paco2_is == "forecast" {
+        lines.push("Settings changed since the latest gas: PaCO2 now is a forecast, not a measurement.".to_owned());
+    }
+    lines.push(String::new());
+    lines.extend(table(&columns(plan), face));
+    lines.push(String::new());
+    lines.extend(plan.plans.iter().map(|line| verdict(line, face)));
+    if let Some(summit) = plan.summit {
+        lines.push(format!(
+            "A faster rate clears more only up to {:.0}/min, where PaCO2 would be {}.",
+            summit.rate_per_min,
+            face.gas(summit.paco2_mmhg)
+        ));
+    }
+    if let (Some(course), Some(first)) = (&plan.course, plan.plans.first()) {
+        lines.push(String::new());
+        lines.push(format!("The next hour {}", name_of(first.aim)));
+        lines.push(format!("  {}", course_line::drawing(course, face)));
+        lines.extend(course_line::words(course, face).into_iter().map(|line| format!("  {line}")));
+    }
+    lines.push(String::new());
+    lines.push("What one step buys from now, and costs".to_owned());
+    lines.extend(plan.levers.iter().map(|it| lever(it, face)));
+    lines.push(String::new());
+    lines.push("Where the numbers come from".to_owned());
+    lines.extend(patient_lines::origins(&plan.baseline, face).iter().map(|line| format!("  {line}")));
+    lines.extend(cautions(&plan.cautions, face));
+    lines.push(String::new());
+    lines.push(face.wrapped(SAFETY, "", ""));
+    finish(&lines, face)
+}
+
+/// Joins the lines, in ASCII where asked.
+pub(super) fn finish(lines: &[String], face: Face) -> String {
+    let mut text = lines.join("\n");
+    text.push('\n');
+    if face.ascii { ascii(&text) } else { text }
+}
+
+/// The cautions, each wrapped.
+pub(super) fn cautions(cautions: &[Caution], face: Face) -> Vec<String> {
+    if cautions.is_empty() {
+        return Vec::new();
+    }
+    let mut lines = vec![String::new(), "Cautions".to_owned()];
+    lines.extend(cautions.iter().map(|caution| face.wrapped(&caution.text, "  ! ", "    ")));
+    lines
+}
+
+fn goal(plan: &Plan, record: &Record, face: Face) -> String {
+    let target = &plan.target;
+    let paco2 = face.gas(target.paco2_mmhg);
+    let ph = target.ph.map_or_else(String::new, |ph| format!(" (pH {})", face.value(ph, Dimension::Ph)));
+    match target.asked {
+        "profile" => {
+            let [low, high] = target.band_mmhg;
+            let there = if target.met_by(plan.now.outcome.state.paco2_mmhg) { "already inside: " } else { "" };
+            format!(
+                "Goal PaCO2 {paco2}{ph}, {there}the band of {} is {} {}.",
+                record.profile().name,
+                face.gas_range(Some(low), Some(high)),
+                face.unit.word()
+            )
+        }
+        "ph" => format!("Goal pH {}, which is a PaCO2 of {paco2}.", face.known(target.ph, Dimension::Ph)),
+        _ => format!("Goal PaCO2 {paco2}{ph}."),
+    }
+}
+
+fn columns(plan: &Plan) -> Vec<Column<'_>> {
+    let trapping_assumed = plan.baseline.trapping_evidence == TrappingEvidence::Assumed;
+    let now = Column {
+        title: plan.now.paco2_is.replace("measured", "now").replace("forecast", "now (fcst)"),
+        settings: &plan.now.settings,
+        outcome: &plan.now.outcome,
+        moved: Moved::Nothing,
+        trapping_assumed,
+    };
+    let plans = plan.plans.iter().map(|line| Column {
+        title: name_of(line.aim).to_owned(),
+        settings: &line.settings,
+        outcome: &line.forecast,
+        moved: match line.aim {
+            "rate" => Moved::Rate,
+            "volume" => Moved::Volume,
+            _ => Moved::Both,
+        },
+        trapping_assumed,
+    });
+    std::iter::once(now).chain(plans).collect()
+}
+
+const fn name_of(aim: &str) -> &'static str {
+    match aim.as_bytes() {
+        b"rate" => "by rate",
+        b"volume" => "by volume",
+        _ => "gentlest",
+    }
+}
+
+/// One sentence on a plan: on the goal or not, what it breaks, what blocks.
+fn verdict(line: &PlanLine, face: Face) -> String {
+    let limits = match line.within_limits {
+        Some(true) => "every limit kept".to_owned(),
+        Some(false) => {
+            let beyond = line.forecast.limits.iter().filter(|limit| limit.verdict.word() == "beyond");
+            let names: Vec<&str> = beyond.map(|limit| limit.id.words()).collect();
+            format!("BEYOND its limit: {}", names.join(", "))
+        }
+        None => {
+            let unknown = line.forecast.limits.iter().filter(|limit| limit.verdict.word() == "unknown");
+            let names: Vec<&str> = unknown.map(|limit| limit.id.words()).collect();
+            format!("none known to be beyond, but unknown: {}", names.join(", "))
+        }
+    };
+    let goal = if line.on_target { "on the goal" } else { "NOT on the goal, the nearest that can be dialled" };
+    let exact = line.exact.map_or_else(String::new, |exact| {
+        let digits = if exact < 100.0 { 1 } else { 0 };
+        format!(" (exactly {exact:.digits$})")
+    });
+    let blocked = if line.blocked_by.is_empty() {
+        String::new()
+    } else {
+        let names: Vec<&str> = line.blocked_by.iter().map(|id| id.words()).collect();
+        format!(" Blocked by {}.", names.join(", "))
+    };
+    face.wrapped(&format!("{}{exact}: {goal}; {limits}.{blocked}", capital(name_of(line.aim))), "", "  ")
+}
+
+fn capital(text: &str) -> String {
+    let mut letters = text.chars();
+    letters.next().map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
+}
+
+fn lever(lever: &Lever, face: Face) -> String {
+    let name = match lever.id {
+        "rate" => "rate",
+        "tidal_volume" => "tidal volume",
+        "inspiratory_pressure" => "inspiratory pressure",
+        "apparatus_dead_space" => "apparatus dead space",
+        _ => "CO2 output",
+    };
+    let signed = |value: f64, dimension| {
+        let shown = face.value(value, dimension);
+        if shown.starts_with('-') || shown == "0" { shown } else { format!("+{shown}") }
+    };
+    let step = format!("{name} {} {}", signed(lever.step, Dimension::Number), lever.unit);
+    let Some(paco2) = lever.paco2_change_mmhg else {
+        return format!("  {step:<31} cannot be dialled from here");
+    };
+    // A tenth of a mmHg tells the levers apart; the forecast itself is not that sharp.
+    let tenth = face.unit.from_mmhg(paco2);
+    let digits = face.unit.digits() + 1;
+    let mut line = format!("  {step:<31} PaCO2 {tenth:+.digits$} {}", face.unit.word());
+    if let Some(ph) = lever.ph_change {
+        line.push_str(&format!(", pH {ph:+.2}"));
+    }
+    if let Some(driving) = lever.driving_pressure_change_cmh2o {
+        line.push_str(&format!(", driving {driving:+.1}"));
+    }
+    if let Some(power) = lever.mechanical_power_change_j_min {
+        line.push_str(&format!(", power {power:+.1}"));
+    }
+    line
+}
