@@ -1,1 +1,5 @@
-fn main(){}
+//! The program: parse, call, print, end with a status.
+
+fn main() -> std::process::ExitCode {
+    tidewright::cli::run()
+}

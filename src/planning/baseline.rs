@@ -149,6 +149,21 @@ impl Baseline {
     }
 }
 
+impl Baseline {
+    /// Evidence in a record that cannot be, for validation: a record that merely lacks what a forecast needs (a gas, a
+    /// mandatory mode, a setting) has none.
+    pub fn evidence_faults(record: &Record) -> Vec<Fault> {
+        let occasions = record.occasions();
+        if let Err(faults) = Mechanics::read(occasions) {
+            return faults;
+        }
+        if settings_now(occasions).is_err() || latest_gas(occasions).is_err() {
+            return Vec::new();
+        }
+        Self::read(record).err().unwrap_or_default()
+    }
+}
+
 /// pH of a gas, measured or from typed bicarbonate, cross-checked.
 struct Blood {
     ph: Option<f64>,
