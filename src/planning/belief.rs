@@ -91,12 +91,9 @@ impl Belief {
             }
             SeriesEvidence::Measured | SeriesEvidence::CutToWhole => (airway.max(0.0), MEASURED_SPREAD_ML),
         };
-        // A breath that the dead space swallows whole says nothing that can be heard.
-        let gases: Vec<_> = baseline
-            .gases
-            .iter()
-            .filter(|gas| gas.tidal_volume_ml - gas.apparatus_ml - airway.max(0.0) > 0.0)
-            .collect();
+        // A breath that the apparatus swallows whole says nothing that can be heard.
+        let gases: Vec<_> =
+            baseline.gases.iter().filter(|gas| gas.tidal_volume_ml > gas.apparatus_ml).collect();
         let smallest =
             gases.iter().map(|gas| gas.tidal_volume_ml - gas.apparatus_ml).fold(f64::INFINITY, f64::min);
         let high = (mean + REACH * spread).min(LARGEST_SHARE * smallest);
@@ -117,7 +114,7 @@ impl Belief {
             gases: gases.len(),
         };
         let ventilation = |gas: &super::baseline::HeardGas| {
-            gas.rate_per_min * (gas.tidal_volume_ml - gas.apparatus_ml - airway)
+            gas.rate_per_min * passing_ml(gas.tidal_volume_ml, gas.apparatus_ml + airway)
         };
         for (i, gas) in gases.iter().enumerate() {
             let previous = i.checked_sub(1).and_then(|before| gases.get(before));
@@ -194,6 +191,12 @@ impl Belief {
             });
         Mixture::new(points, variance.sqrt())
     }
+}
+
+/// What passes the series dead space of section 1, mL, for ratios of ventilation: at least 5 % of a breath, as the grid
+/// allows no more than 95 % of one to be dead space.
+pub fn passing_ml(tidal_volume_ml: f64, series_ml: f64) -> f64 {
+    (tidal_volume_ml - series_ml).max((1.0 - LARGEST_SHARE) * tidal_volume_ml)
 }
 
 /// Extra variance of a gas drawn before the preceding change had settled: `ln(1 + |missing|/final)²`.

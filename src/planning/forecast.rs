@@ -3,7 +3,7 @@
 use serde::Serialize;
 
 use super::baseline::{Baseline, volume_of};
-use super::belief::{Ahead, Belief, Interval};
+use super::belief::{Ahead, Belief, Interval, passing_ml};
 use super::course::Course;
 use super::limits;
 use super::outcome::{Outcome, State};
@@ -347,12 +347,9 @@ impl<'a> Forecaster<'a> {
         let gas = &self.baseline.gas;
         // Ventilation ratios are taken throughout with the dead space of section 1, not the posterior one.
         let section_one = self.baseline.exchange.series_ml;
-        let before = gas.rate_per_min * (gas.tidal_volume_ml - section_one);
-        let ahead =
-            rate * (tidal - section_one - (settings.apparatus_dead_space_ml - gas.apparatus_ml));
-        if ahead <= 0.0 {
-            return None;
-        }
+        let before = gas.rate_per_min * passing_ml(gas.tidal_volume_ml, section_one);
+        let apparatus_change = settings.apparatus_dead_space_ml - gas.apparatus_ml;
+        let ahead = rate * passing_ml(tidal, section_one + apparatus_change);
         let readings = self.held_readings(dialled);
         let held = self.arithmetic(self.reading(), settings, rate, tidal, dialled.co2_factor);
         let other = held.zip(readings.split).map_or(0.0, |(held, split)| libm::log(held / split));

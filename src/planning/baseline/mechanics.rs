@@ -51,9 +51,31 @@ pub struct Mechanics {
     pub pressure_scale: Option<f64>,
     /// The total rate where the patient triggers, 1/min.
     pub trigger_rate_per_min: Option<f64>,
-    /// The effective rate of each occasion, 1/min; `None` without complete settings.
-    pub rates_per_min: Vec<Option<f64>>,
+    /// What each occasion delivered; `None` without complete settings.
+    pub delivered: Vec<Option<Delivered>>,
     measured_pressure_breath: Option<(PressureBreath, f64)>,
+    plateau_reading: Option<PlateauReading>,
+}
+
+/// What an occasion delivered.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Delivered {
+    /// Effective rate, 1/min, by the total charted with it or before it.
+    pub rate_per_min: f64,
+    /// Whether a total rate had been charted by then.
+    pub total_known: bool,
+    /// Volume read on this occasion in pressure control, mL.
+    pub pressure_volume_ml: Option<f64>,
+}
+
+/// A plateau read without total PEEP: its compliance hangs on the expiratory resistance finally in force.
+#[derive(Debug, Clone, Copy, PartialEq)]
+struct PlateauReading {
+    number: usize,
+    volume_ml: f64,
+    above_cmh2o: f64,
+    peep_cmh2o: f64,
+    expiratory_s: f64,
 }
 
 impl Mechanics {
@@ -70,21 +92,34 @@ impl Mechanics {
             volume_per_set: 1.0,
             pressure_scale: None,
             trigger_rate_per_min: None,
-            rates_per_min: Vec::with_capacity(occasions.len()),
+            delivered: Vec::with_capacity(occasions.len()),
             measured_pressure_breath: None,
+            plateau_reading: None,
         };
+        let mut any_total = false;
         let (mut cautions, mut faults) = (Cautions::default(), Vec::new());
         for occasion in occasions {
             let Some(settings) = occasion.in_force.mandatory() else {
-                reading.rates_per_min.push(None);
+                reading.delivered.push(None);
                 continue;
             };
             let measured = &occasion.entry.measured;
             reading.read_rate(settings, measured);
-            reading.rates_per_min.push(Some(reading.effective_rate(settings.rate_per_min)));
+            any_total |= measured.total_rate_per_min.is_some();
+            let pressure_volume_ml = match (settings.inflation, measured.exhaled_tidal_volume_ml) {
+                (Inflation::Pressure { .. }, Some(exhaled)) => {
+                    Self::corrected_volume(occasion.number, exhaled, settings, measured).ok()
+                }
+                _ => None,
+            };
+            let rate_per_min = reading.effective_rate(settings.rate_per_min);
+            reading.delivered.push(Some(Delivered { rate_per_min, total_known: any_total, pressure_volume_ml }));
             if let Err(fault) = reading.read_lung(occasion.number, settings, measured, &mut cautions) {
                 faults.push(fault);
             }
+        }
+        if let Err(fault) = reading.read_plateau_again(&mut cautions) {
+            faults.push(fault);
         }
         if faults.is_empty() {
             reading.scale_pressure_control();
@@ -137,6 +172,14 @@ impl Mechanics {
             (Some(_), Some((_, evidence))) => evidence,
             _ => TrappingEvidence::Unknown,
         }
+    }
+
+    /// A compliance read from a plateau without total PEEP, with the expiratory resistance finally in force.
+    fn read_plateau_again(&mut self, cautions: &mut Cautions) -> Result<(), Fault> {
+        let Some(reading) = self.plateau_reading else { return Ok(()) };
+        let compliance = self.compliance_from_plateau(&reading, cautions)?;
+        self.compliance = Some((compliance, Worth::Plateau));
+        Ok(())
     }
 
     fn read_rate(&mut self, settings: &Settings, measured: &Measured) {
@@ -199,6 +242,7 @@ impl Mechanics {
         }
         if let Some(given) = measured.compliance_ml_cmh2o {
             self.compliance = Some((given, Worth::Plateau));
+            self.plateau_reading = None;
             self.trapping_unread = false;
         }
         let at = Bedside { number, settings, measured, phases };
@@ -260,41 +304,41 @@ impl Mechanics {
         }
         let Some(above) = at.plateau_above_peep() else { return Ok(()) };
         let compliance = if let Some(auto) = at.auto_peep() {
+            self.plateau_reading = None;
+            self.trapping_unread = false;
             bedside::compliance(volume_ml, at.driving(above, auto)?)
         } else {
-            self.compliance_from_plateau(at, volume_ml, above, cautions)?
+            let reading = at.plateau_reading(volume_ml, above);
+            self.plateau_reading = Some(reading);
+            self.compliance_from_plateau(&reading, cautions)?
         };
         self.compliance = Some((compliance, Worth::Plateau));
-        if at.auto_peep().is_some() {
-            self.trapping_unread = false;
-        }
         Ok(())
     }
 
     /// Compliance where no total PEEP was measured: with trapping when a resistance is known, else without.
     fn compliance_from_plateau(
         &mut self,
-        at: &Bedside<'_>,
-        volume_ml: f64,
-        above: f64,
+        reading: &PlateauReading,
         cautions: &mut Cautions,
     ) -> Result<f64, Fault> {
+        let PlateauReading { number, volume_ml, above_cmh2o: above, peep_cmh2o, expiratory_s } = *reading;
         self.trapping_unread = false;
         let apparent = volume_ml / above;
         let Some((resistance, evidence)) = self.expiratory() else { return Ok(apparent) };
-        match bedside::compliance_with_trapping(volume_ml, above, at.phases.expiratory_s, resistance) {
+        match bedside::compliance_with_trapping(volume_ml, above, expiratory_s, resistance) {
             Ok(compliance) => Ok(compliance),
             Err(Unread::Emptying(share)) if share >= 1.0 && evidence == TrappingEvidence::Given => {
                 Err(Fault::new(
                     [
-                        Place::in_entry(at.number, "measured", "plateau"),
-                        Place::in_entry(at.number, "measured", "expiratory_resistance"),
+                        Place::in_entry(number, "measured", "plateau"),
+                        Place::in_entry(number, "measured", "expiratory_resistance"),
                     ],
                     format!(
                         "a plateau of {:.0} cmH2O with {volume_ml:.0} mL cannot be: at an expiratory resistance of \
                          {resistance:.0} cmH2O·s/L the lung cannot empty so much in {:.1} s",
-                        above + at.settings.peep_cmh2o.unwrap_or(0.0),
-                        at.phases.expiratory_s
+                        above + peep_cmh2o,
+                        expiratory_s
                     ),
                     "Check plateau, expiratory_resistance and timing; an expiratory hold (total_peep) settles it.",
                 ))
@@ -363,9 +407,11 @@ impl Mechanics {
                     "Check exhaled_tidal_volume, inspiratory_pressure, resistance and timing.",
                 ));
             };
+            self.plateau_reading = None;
             self.compliance = Some((compliance, Worth::Volume));
         } else if better(Worth::Crude) {
             self.compliance = Some((volume_ml / pressure, Worth::Crude));
+            self.trapping_unread = true;
             cautions.say(
                 "trapping_unknown",
                 "Compliance is read as tidal volume over inspiratory pressure, so trapped gas is unknown: an \
@@ -388,6 +434,7 @@ impl Mechanics {
         let given_compliance = measured.compliance_ml_cmh2o;
         let given_resistance = measured.resistance_cmh2o_s_l;
         let expiratory = self.expiratory_resistance.map(|(value, _)| value).or(given_resistance);
+        self.plateau_reading = None;
         let (compliance, auto) = if let Some(auto) = at.auto_peep() {
             let driving = at.driving(above, auto)?;
             self.trapping_unread = false;
@@ -395,7 +442,7 @@ impl Mechanics {
         } else if expiratory.is_some() {
             let compliance = match given_compliance {
                 Some(given) => given,
-                None => self.compliance_from_plateau(at, volume_ml, above, cautions)?,
+                None => self.compliance_from_plateau(&at.plateau_reading(volume_ml, above), cautions)?,
             };
             (compliance, (above - volume_ml / compliance).max(0.0))
         } else {
@@ -455,8 +502,11 @@ impl Mechanics {
         let Some(volume_ml) = volume_ml else { return };
         let driving = volume_ml / compliance;
         let litres = compliance / 1000.0;
+        let had = self.expiratory_resistance;
         let resistance = if auto > 0.0 {
             bedside::time_constant_from_auto_peep(auto, driving, phases.expiratory_s) / litres
+        } else if matches!(had, Some((_, TrappingEvidence::Given))) {
+            return; // a hold that shows none does not cut a resistance that was given
         } else {
             let cap = bedside::longest_time_constant(driving, phases.expiratory_s) / litres;
             self.inspiratory_resistance.map_or(cap, |inspiratory| inspiratory.min(cap))
@@ -487,6 +537,16 @@ struct Bedside<'a> {
 impl Bedside<'_> {
     fn plateau_above_peep(&self) -> Option<f64> {
         self.measured.plateau_cmh2o.zip(self.settings.peep_cmh2o).map(|(plateau, peep)| plateau - peep)
+    }
+
+    fn plateau_reading(&self, volume_ml: f64, above_cmh2o: f64) -> PlateauReading {
+        PlateauReading {
+            number: self.number,
+            volume_ml,
+            above_cmh2o,
+            peep_cmh2o: self.settings.peep_cmh2o.unwrap_or(0.0),
+            expiratory_s: self.phases.expiratory_s,
+        }
     }
 
     /// Measured auto-PEEP, cmH2O: given, or total PEEP less PEEP (a total PEEP just below PEEP is a reading of none).
