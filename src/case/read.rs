@@ -17,6 +17,7 @@ use super::profile::Profile;
 use super::record::{Draft, Record, Steadiness};
 use walk::{Value, Walk};
 
+pub use nearest::nearest;
 pub use profile::profile;
 pub use syntax::as_shown;
 
@@ -140,14 +141,14 @@ fn in_order(mut problems: Vec<Problem>) -> Vec<Problem> {
 
 /// Beside syntax errors: those, and what is wrong on other lines.
 fn beside_slips(text: &str, slips: Vec<Problem>, others: Vec<Problem>) -> Vec<Problem> {
-    let line = |problem: &Problem| problem.span.as_ref().map(|span| syntax::line_of(text, span.start));
-    let mut problems = slips;
-    for other in others {
-        if !problems.iter().any(|slip| line(slip) == line(&other)) {
-            problems.push(other);
-        }
-    }
-    in_order(problems)
+    let start = |problem: &Problem| problem.span.as_ref().map(|span| span.start);
+    let line = |problem: &Problem| start(problem).map(|byte| syntax::line_start(text, byte));
+    let hidden = |slip: &Problem, other: &Problem| {
+        line(slip) == line(other) || start(other).is_some_and(|byte| syntax::hides(text, slip, byte))
+    };
+    let seen: Vec<Problem> =
+        others.into_iter().filter(|other| !slips.iter().any(|slip| hidden(slip, other))).collect();
+    in_order(slips.into_iter().chain(seen).collect())
 }
 
 impl Walk {

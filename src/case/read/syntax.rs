@@ -4,6 +4,7 @@ use std::borrow::Cow;
 
 use toml::de::DeTable;
 
+use super::walk::shown;
 use crate::case::problem::Problem;
 
 const BOM: &[u8] = b"\xEF\xBB\xBF";
@@ -39,60 +40,140 @@ pub(super) fn text(bytes: &[u8]) -> Result<&str, Problem> {
 pub(super) fn table(text: &str) -> (DeTable<'_>, Vec<Problem>) {
     let (table, errors) = DeTable::parse_recoverable(text);
     let mut problems: Vec<Problem> = Vec::new();
+    let mut seen = Vec::new();
     for error in errors {
         let span = error.span().unwrap_or(0..0);
-        // One slip makes the parser stumble more than once on the same line: the first says it best.
-        let line = line_of(text, span.start);
-        if problems
-            .iter()
-            .any(|known| known.span.as_ref().is_some_and(|span| line_of(text, span.start) == line))
-        {
+        let line = Line::at(text, span.start);
+        // One slip makes the parser stumble more than once: the first of a line says it best, and what stands below a
+        // header that could not be read is read as if it stood elsewhere.
+        if seen.contains(&line.start) || problems.iter().any(|slip| hides(text, slip, span.start)) {
             continue;
         }
-        let (message, help) = mend(error.message());
+        seen.push(line.start);
+        let (message, help) = mend(error.message(), &line, span.start);
         problems.push(Problem::at(span, message, help));
+    }
+    if table.get_ref().is_empty() {
+        problems.truncate(1);
+        for slip in &mut problems {
+            slip.message =
+                "this does not look like a case or a profile: no line of it is key = value".to_owned();
+            slip.help =
+                "is it the right file? tidewright cases --show injured-lungs prints a case to start from"
+                    .to_owned();
+        }
     }
     (table.into_inner(), problems)
 }
 
-/// How many lines stand before a byte.
-pub(super) fn line_of(text: &str, byte: usize) -> usize {
-    text.bytes().take(byte).filter(|byte| *byte == b'\n').count()
+/// Whether what stands at `byte` cannot be trusted because of a slip in the header above it.
+pub(super) fn hides(text: &str, slip: &Problem, byte: usize) -> bool {
+    let Some(span) = &slip.span else { return false };
+    let header = Line::at(text, span.start);
+    let end = header.start + header.text.len();
+    if !header.text.trim_start().starts_with('[') || byte <= end {
+        return false;
+    }
+    let below = text.get(end..byte).unwrap_or("");
+    !below.lines().any(|line| line.trim_start().starts_with('['))
 }
 
-/// The parser's words, and how to mend what they complain about.
-fn mend(said: &str) -> (String, &'static str) {
-    let is = |start: &str| said.starts_with(start);
-    if is("duplicate key") {
-        return (
-            "this stands here a second time".to_owned(),
-            "keep one of the two; what was charted later goes into a new [[entry]] at the end of the file",
-        );
+/// The byte at which the line of a byte starts.
+pub(super) fn line_start(text: &str, byte: usize) -> usize {
+    Line::at(text, byte).start
+}
+
+struct Line<'t> {
+    start: usize,
+    text: &'t str,
+}
+
+impl<'t> Line<'t> {
+    fn at(text: &'t str, byte: usize) -> Self {
+        let start = text.get(..byte).and_then(|before| before.rfind('\n')).map_or(0, |end| end + 1);
+        let text = text.get(start..).and_then(|rest| rest.lines().next()).unwrap_or("");
+        Self { start, text }
     }
-    let help = if is("string values must be quoted") {
-        "text stands in quotation marks, as in label = \"Bay 3\""
-    } else if is("unexpected key or value") || is("extra") || is("unexpected content") {
-        "one key = value a line; a number with a unit or a decimal comma stands in quotation marks, as in paco2 = \"8,4 kPa\""
-    } else if is("unexpected leading zero") {
-        "write the number without the zero in front: 7, not 07"
-    } else if is("key with no value")
-        || is("missing value")
-        || is("missing assignment")
-        || is("invalid key-value")
-    {
-        "write key = value, as in peep = 10, or take the line away"
-    } else if is("unclosed") || is("missing table") || is("missing array") {
-        "a table is named in brackets on a line of its own: [patient], [[entry]], [entry.settings]"
-    } else if is("carriage return") || is("invalid comment") {
-        "take away the invisible character, or type the line again"
-    } else if is("missing escaped") || is("too few unicode") || is("invalid escape") {
-        "write a backslash twice, or take it away"
+
+    /// The key and the value of a line, its comment left out.
+    fn halves(&self) -> Option<(&'t str, &'t str)> {
+        let (key, value) = self.text.split_once('=')?;
+        let value = value.split_once('#').map_or(value, |(value, _)| value);
+        Some((key.trim(), value.trim())).filter(|(key, _)| !key.is_empty())
+    }
+}
+
+/// The parser's words made plain, and how to mend what they complain about.
+fn mend(said: &str, line: &Line<'_>, byte: usize) -> (String, String) {
+    let is = |start: &str| said.starts_with(start);
+    let plain = |message: &str, help: &str| (message.to_owned(), help.to_owned());
+    let letter = line.text.get(byte.saturating_sub(line.start)..).and_then(|rest| rest.chars().next());
+    let value_astray = ["string values", "unexpected key or value", "unexpected content", "missing value"];
+    if let Some((key, value)) = line.halves().filter(|_| value_astray.into_iter().any(is)) {
+        return unquoted(&shown(key), &shown(value));
+    }
+    if is("duplicate key") {
+        plain(
+            "this key or table stands here for the second time",
+            "keep one of the two; what was charted later goes into a new [[entry]] at the end of the file",
+        )
+    } else if is("key with no value") || is("missing assignment") || is("invalid key-value") {
+        plain(
+            "there is no equals sign on this line",
+            "write key = value, as in peep = 10; remarks begin with #",
+        )
+    } else if said.contains("string") && letter.is_some_and(char::is_control) {
+        plain(
+            "this text holds an invisible control character",
+            "take it away, or type the text again without copying it",
+        )
     } else if said.contains("string") {
-        "close the text with the quotation mark that it began with, on the same line"
-    } else if is("cannot extend") {
-        "each table is named once: [[entry]] with two brackets begins a new entry, [entry.gas] with one goes on with it"
+        plain(
+            "the quotation mark is not closed",
+            "close the text with the quotation mark that it began with, on the same line",
+        )
+    } else if is("unclosed") || is("missing table") || is("missing array") {
+        plain(
+            "a bracket is not closed",
+            "a table is named in brackets on a line of its own, as in [patient], [[entry]], [entry.settings]",
+        )
+    } else if is("unexpected leading zero") {
+        plain("a number does not begin with a zero here", "write 5 for 05")
+    } else if is("invalid date") || is("invalid time") {
+        let help = "write, for example, at = 2026-03-04T08:10:00+01:00".to_owned();
+        (format!("this is no time that exists: {said}"), help)
     } else {
-        "one key = value a line, text and units in quotation marks: look at an example with tidewright cases --show injured-lungs"
+        let help = if is("carriage return") || is("invalid comment") {
+            "take away the invisible character, or type the line again"
+        } else if is("missing escaped") || is("too few unicode") || is("invalid escape") {
+            "write a backslash twice, or take it away"
+        } else if is("cannot extend") {
+            "each table is named once: [[entry]] with two brackets begins a new entry, [entry.gas] with one goes on with it"
+        } else {
+            "one key = value a line, text and units in quotation marks: tidewright cases --show injured-lungs prints an example"
+        };
+        (format!("this line cannot be read: {said}"), help.to_owned())
+    }
+}
+
+/// A value that should stand in quotation marks, or that is not there at all.
+fn unquoted(key: &str, value: &str) -> (String, String) {
+    if value.is_empty() {
+        let help = "write key = value, as in peep = 10, or take the line away".to_owned();
+        return ("there is no value after the equals sign".to_owned(), help);
+    }
+    let quoted = value.replace('"', "");
+    let bare = quoted.trim_start_matches(['-', '+']);
+    let numeric = bare.starts_with(|first: char| first.is_ascii_digit());
+    if numeric && bare.chars().all(|letter| letter.is_ascii_digit() || letter == ',') {
+        let point = quoted.replacen(',', ".", 1);
+        let message = "a decimal comma is only understood in quotation marks".to_owned();
+        return (message, format!("write {key} = {point}, or {key} = \"{quoted}\""));
+    }
+    let message = if numeric {
+        "a number with its unit stands in quotation marks"
+    } else {
+        "text stands in quotation marks"
     };
-    (format!("this line cannot be read: {said}"), help)
+    (message.to_owned(), format!("write {key} = \"{quoted}\""))
 }

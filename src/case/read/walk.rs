@@ -9,7 +9,8 @@ use super::nearest::nearest;
 use crate::case::fault::Place;
 use crate::case::problem::{Problem, Spans};
 use crate::quantity::input::{Plausible, Typed};
-use crate::quantity::parse;
+use crate::quantity::parse::{self, Unread};
+use crate::quantity::show;
 use crate::quantity::unit::Dimension;
 
 /// A value and where it stands.
@@ -86,12 +87,12 @@ impl Walk {
                 }
                 Err(unread) => {
                     let message = format!("{}: {unread}", input.words);
-                    self.problem(
-                        place,
-                        value.span(),
-                        message,
-                        format!("{}; for example {example}", unread.help()),
-                    );
+                    let help = match unread {
+                        // Their help is an example already.
+                        Unread::Comma { .. } | Unread::NoRatio(_) | Unread::Inches(_) => unread.help(),
+                        _ => format!("{}; for example {example}", unread.help()),
+                    };
+                    self.problem(place, value.span(), message, help);
                     return None;
                 }
             },
@@ -108,12 +109,13 @@ impl Walk {
         if input.dimension == Dimension::Ratio && !matches!(value.get_ref(), DeValue::String(_)) {
             let message =
                 format!("{} as a plain number could mean inspiration first or expiration first", input.words);
-            self.problem(
-                place,
-                value.span(),
-                message,
-                format!("write both parts, inspiration first: {example}"),
-            );
+            let help = if number.is_finite() && number > 0.0 {
+                let [one, other] = [number, 1.0 / number].map(show::ratio);
+                format!("write both parts, inspiration first: ratio = \"{one}\" or ratio = \"{other}\"")
+            } else {
+                format!("write both parts, inspiration first: {example}")
+            };
+            self.problem(place, value.span(), message, help);
             return None;
         }
         match input.accept(number, typed) {
@@ -232,12 +234,10 @@ impl Walk {
         self.spans.insert(place, value.span());
         let table = value.get_ref().as_table();
         if table.is_none() {
-            let (wanted, example) = if value.get_ref().is_array() {
-                ("a table named once, with single brackets", header)
-            } else {
-                ("a table", header)
-            };
-            self.kind(place, value, wanted, example);
+            let found = kind_of(value.get_ref());
+            let message = format!("{header} must be a table, and this is {found}");
+            let help = format!("write {header} on a line of its own, with its keys below it");
+            self.problem(place, value.span(), message, help);
         }
         table
     }
