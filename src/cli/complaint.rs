@@ -102,6 +102,14 @@ mod tests {
     }
 
     #[test]
+    fn colour_is_only_drawn_when_asked_for() {
+        let problem = [Problem::at(0..1, "too fast", "write rate = 22")];
+        let source = Some(("bed.toml", "b = 220\n"));
+        assert!(draw(&problem, source, true).contains("\u{1b}["));
+        assert!(!draw(&problem, source, false).contains('\u{1b}'));
+    }
+
+    #[test]
     fn a_flag_is_named() {
         let fault = Fault::new([Place::in_entry(1, "settings", "tidal_volume")], "too small", "write more");
         let drawn = draw(&[fault.into()], None, false);

@@ -1,6 +1,7 @@
 //! From bytes to a TOML table, and the syntax errors of TOML in words that say how to mend them.
 
 use std::borrow::Cow;
+use std::ops::Range;
 
 use toml::de::DeTable;
 
@@ -36,51 +37,63 @@ pub(super) fn text(bytes: &[u8]) -> Result<&str, Problem> {
     })
 }
 
+/// Syntax errors, and where other problems cannot be trusted because of them.
+#[derive(Default)]
+pub(super) struct Slips {
+    pub problems: Vec<Problem>,
+    /// The line of each slip; below a header that could not be read, everything up to the next header.
+    hidden: Vec<Range<usize>>,
+}
+
+/// More slips than this are not looked for: whoever has as many has the wrong file, or one slip repeated.
+const MOST: usize = 100;
+
+impl Slips {
+    /// Whether what is said of `byte` may only follow from a slip.
+    pub(super) fn hide(&self, byte: usize) -> bool {
+        self.hidden.iter().any(|hidden| hidden.contains(&byte))
+    }
+
+    fn add(&mut self, text: &str, byte: usize, problem: Problem) {
+        let line = Line::at(text, byte);
+        let mut end = line.start + line.text.len() + 1;
+        if line.text.trim_start().starts_with('[') {
+            let below = text.get(end..).unwrap_or("").split_inclusive('\n');
+            end += below.take_while(|line| !line.trim_start().starts_with('[')).map(str::len).sum::<usize>();
+        }
+        self.hidden.push(line.start..end);
+        self.problems.push(problem);
+    }
+}
+
 /// The table, as much as could be read, and every syntax error.
-pub(super) fn table(text: &str) -> (DeTable<'_>, Vec<Problem>) {
+pub(super) fn table(text: &str) -> (DeTable<'_>, Slips) {
     let (table, errors) = DeTable::parse_recoverable(text);
-    let mut problems: Vec<Problem> = Vec::new();
-    let mut seen = Vec::new();
+    let table = table.into_inner();
+    let mut slips = Slips::default();
     for error in errors {
         let span = error.span().unwrap_or(0..0);
-        let line = Line::at(text, span.start);
-        // One slip makes the parser stumble more than once: the first of a line says it best, and what stands below a
-        // header that could not be read is read as if it stood elsewhere.
-        if seen.contains(&line.start) || problems.iter().any(|slip| hides(text, slip, span.start)) {
+        // One slip makes the parser stumble more than once: the first of a line says it best.
+        if slips.hide(span.start) {
             continue;
         }
-        seen.push(line.start);
-        let (message, help) = mend(error.message(), &line, span.start);
-        problems.push(Problem::at(span, message, help));
-    }
-    if table.get_ref().is_empty() {
-        problems.truncate(1);
-        for slip in &mut problems {
-            slip.message =
-                "this does not look like a case or a profile: no line of it is key = value".to_owned();
-            slip.help =
-                "is it the right file? tidewright cases --show injured-lungs prints a case to start from"
-                    .to_owned();
+        let (message, help) = mend(error.message(), &Line::at(text, span.start), span.start);
+        slips.add(text, span.start, Problem::at(span, message, help));
+        if slips.problems.len() == MOST {
+            break;
         }
     }
-    (table.into_inner(), problems)
-}
-
-/// Whether what stands at `byte` cannot be trusted because of a slip in the header above it.
-pub(super) fn hides(text: &str, slip: &Problem, byte: usize) -> bool {
-    let Some(span) = &slip.span else { return false };
-    let header = Line::at(text, span.start);
-    let end = header.start + header.text.len();
-    if !header.text.trim_start().starts_with('[') || byte <= end {
-        return false;
+    // Not one key was read: this is not a slip in a case, it is another kind of file.
+    if table.is_empty() && !slips.problems.is_empty() {
+        slips.problems.truncate(1);
+        for slip in &mut slips.problems {
+            let message = "this does not look like a case or a profile: no line of it is key = value";
+            let help =
+                "is it the right file? tidewright cases --show injured-lungs prints a case to start from";
+            *slip = Problem::at(slip.span.clone().unwrap_or(0..0), message, help);
+        }
     }
-    let below = text.get(end..byte).unwrap_or("");
-    !below.lines().any(|line| line.trim_start().starts_with('['))
-}
-
-/// The byte at which the line of a byte starts.
-pub(super) fn line_start(text: &str, byte: usize) -> usize {
-    Line::at(text, byte).start
+    (table, slips)
 }
 
 struct Line<'t> {

@@ -46,6 +46,8 @@ pub struct Plausible {
     pub example: &'static str,
     /// Whether the units of weather reports are likely readings.
     pub weather: bool,
+    /// Whether it is spoken of as a flag of the command line rather than a key of a file.
+    pub as_flag: bool,
 }
 
 impl Input {
@@ -61,6 +63,7 @@ impl Input {
             digits,
             example,
             weather: key == Key::BarometricPressure,
+            as_flag: false,
         }
     }
 
@@ -74,6 +77,21 @@ impl Input {
 }
 
 impl Plausible {
+    /// The same, spoken of as a flag of the command line.
+    #[must_use]
+    pub const fn flag(self) -> Self {
+        Self { as_flag: true, ..self }
+    }
+
+    /// How a value is written: `rate = 22` in a file, `--rate 22` as a flag.
+    pub fn written(&self, value: &str) -> String {
+        if self.as_flag {
+            format!("--{} {value}", self.name.replace('_', "-"))
+        } else {
+            format!("{} = {value}", self.name)
+        }
+    }
+
     const fn unit(&self) -> &'static str {
         self.dimension.unit()
     }
@@ -161,7 +179,7 @@ impl Plausible {
                 return readings.join("; ");
             }
             if self.holds(-number) {
-                return format!("a sign missing? if so, write {} = {}", self.name, show::number(-number, 3));
+                return format!("a sign missing? if so, write {}", self.written(&show::number(-number, 3)));
             }
             // A share is seldom ten-fold wrong, and mostly a percentage, which was offered above.
             if matches!(typed, Typed::Plain)
@@ -171,7 +189,7 @@ impl Plausible {
                 return slip;
             }
         }
-        format!("write, for example, {} = {}", self.name, self.example)
+        format!("write, for example, {}", self.written(self.example))
     }
 
     fn offer(&self, number: f64, unit: &Unit) -> String {
@@ -179,13 +197,14 @@ impl Plausible {
         let value = unit.to_default(number);
         if unit.word == self.unit() {
             let reading = self.shown(value);
-            return format!("{reading} would be plausible: if that was meant, write {} = {shown}", self.name);
+            return format!(
+                "{reading} would be plausible: if that was meant, write {}",
+                self.written(&shown)
+            );
         }
         let (reading, converted) = (show::joined(&shown, unit.word), self.shown_rounded(value));
-        format!(
-            "{reading} would be plausible ({converted}): if that was meant, write {} = \"{reading}\"",
-            self.name
-        )
+        let written = self.written(&format!("\"{reading}\""));
+        format!("{reading} would be plausible ({converted}): if that was meant, write {written}")
     }
 
     fn slip(&self, value: f64) -> Option<String> {
@@ -198,10 +217,9 @@ impl Plausible {
         slips.into_iter().find(|(factor, _)| self.holds(value / factor)).map(|(factor, question)| {
             let meant = value / factor;
             format!(
-                "{question} {} would be plausible: look again, and if that is it, write {} = {}",
+                "{question} {} would be plausible: look again, and if that is it, write {}",
                 self.shown(meant),
-                self.name,
-                show::number(meant, 3)
+                self.written(&show::number(meant, 3))
             )
         })
     }
