@@ -5,6 +5,7 @@ mod contradiction;
 pub mod entry;
 pub mod fault;
 pub mod file;
+pub mod flag;
 mod inherit;
 pub mod moment;
 mod plausible;
