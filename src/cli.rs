@@ -76,7 +76,8 @@ pub fn run() -> ExitCode {
 }
 
 fn print(said: &Said) -> ExitCode {
-    let written = io::stdout().lock().write_all(said.out.as_bytes()).and_then(|()| io::stdout().lock().flush());
+    let written =
+        io::stdout().lock().write_all(said.out.as_bytes()).and_then(|()| io::stdout().lock().flush());
     let complained = io::stderr().lock().write_all(said.err.as_bytes());
     match written.and(complained) {
         Ok(()) => said.status.into(),
@@ -93,7 +94,7 @@ fn dispatch(matches: &ArgMatches) -> Said {
         Some(("check", matches)) => answer::check(matches, colour),
         Some(("profiles", matches)) => answer::profiles(matches, colour),
         Some(("cases", matches)) => answer::cases(matches, colour),
-        Some(("completions", matches)) => answer::completions(matches),
+        Some(("completions", matches)) => Ok(answer::completions(matches)),
         Some(("manual", _)) => answer::manual(),
         _ => answer::plan_of(matches, colour),
     };
@@ -110,7 +111,7 @@ pub struct Colours {
 }
 
 impl Colours {
-    /// `--color` first, then NO_COLOR, then whether it goes to a terminal.
+    /// `--color` first, then `NO_COLOR`, then whether it goes to a terminal.
     fn chosen(matches: &ArgMatches) -> Self {
         let matches = matches.subcommand().map_or(matches, |(_, matches)| matches);
         match matches.get_one::<String>("color").map(String::as_str) {

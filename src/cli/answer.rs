@@ -36,7 +36,9 @@ fn face(matches: &ArgMatches) -> Face {
 }
 
 fn as_json(answer: &impl serde::Serialize) -> Result<String, Said> {
-    json::of(answer).map_err(|error| sentence(&format!("the answer cannot be written as JSON: {error}"), Status::Unreadable))
+    json::of(answer).map_err(|error| {
+        sentence(&format!("the answer cannot be written as JSON: {error}"), Status::Unreadable)
+    })
 }
 
 fn held(matches: &ArgMatches) -> Held {
@@ -63,9 +65,8 @@ fn trial_of(matches: &ArgMatches, colours: Colours) -> Result<Trial, Said> {
 }
 
 fn asked(matches: &ArgMatches, colours: Colours) -> Result<Asked, Said> {
-    let complain = |problem: Problem| {
-        Said::complaint(complaint::draw(&[problem], None, colours.err), Status::BadInput)
-    };
+    let complain =
+        |problem: Problem| Said::complaint(complaint::draw(&[problem], None, colours.err), Status::BadInput);
     if let Some(text) = matches.get_one::<String>("to_paco2") {
         return trial::quantity(text, Key::PlannedPaco2)
             .map(Asked::Paco2)
@@ -160,7 +161,7 @@ fn painted(text: String, colour: bool) -> String {
 
 /// `tidewright check`.
 pub fn check(matches: &ArgMatches, colours: Colours) -> Answer {
-    let (mut files, mut drawn, mut lines) = (Vec::new(), String::new(), String::new());
+    let (mut files, mut drawn, mut lines) = (Vec::new(), String::new(), Vec::new());
     for name in matches.get_many::<String>("files").into_iter().flatten() {
         let bytes = bytes(name)?;
         let shown = read::as_shown(&bytes).into_owned();
@@ -169,7 +170,7 @@ pub fn check(matches: &ArgMatches, colours: Colours) -> Answer {
         let problems = problems_of(kind, name, &bytes);
         drawn.push_str(&complaint::draw(&problems, Some((path, &shown)), colours.err));
         if problems.is_empty() {
-            lines.push_str(&format!("{path}: nothing wrong\n"));
+            lines.push(format!("{path}: nothing wrong\n"));
         }
         files.push(CheckedFile::new(path, kind, &shown, &problems));
     }
@@ -177,7 +178,7 @@ pub fn check(matches: &ArgMatches, colours: Colours) -> Answer {
     if matches.get_flag("json") {
         return Ok(Said::answer(as_json(&Checked { files })?, status));
     }
-    Ok(Said { out: lines, err: drawn, status })
+    Ok(Said { out: lines.concat(), err: drawn, status })
 }
 
 /// What is wrong with a file, and whether the engine could start from it. A record without a gas, or under support, is no
@@ -213,7 +214,12 @@ pub fn cases(matches: &ArgMatches, _: Colours) -> Answer {
     listed(matches, "case", &CASES, &summary)
 }
 
-fn listed(matches: &ArgMatches, what: &str, presets: &[Preset], summary: &dyn Fn(&Preset) -> String) -> Answer {
+fn listed(
+    matches: &ArgMatches,
+    what: &str,
+    presets: &[Preset],
+    summary: &dyn Fn(&Preset) -> String,
+) -> Answer {
     if let Some(name) = matches.get_one::<String>("show") {
         let found = presets.iter().find(|preset| preset.name == name);
         return found.map(|preset| Said::answer(preset.text.to_owned(), Status::Done)).ok_or_else(|| {
@@ -226,8 +232,10 @@ fn listed(matches: &ArgMatches, what: &str, presets: &[Preset], summary: &dyn Fn
     }
     let list: Vec<(&str, String)> = presets.iter().map(|preset| (preset.name, summary(preset))).collect();
     if matches.get_flag("json") {
-        let objects: Vec<_> =
-            list.iter().map(|(name, summary)| serde_json::json!({ "name": name, "summary": summary })).collect();
+        let objects: Vec<_> = list
+            .iter()
+            .map(|(name, summary)| serde_json::json!({ "name": name, "summary": summary }))
+            .collect();
         return Ok(Said::answer(as_json(&objects)?, Status::Done));
     }
     let lines: Vec<String> = list.iter().map(|(name, summary)| format!("{name:<26}{summary}\n")).collect();
@@ -235,12 +243,12 @@ fn listed(matches: &ArgMatches, what: &str, presets: &[Preset], summary: &dyn Fn
 }
 
 /// `tidewright completions`.
-pub fn completions(matches: &ArgMatches) -> Answer {
+pub fn completions(matches: &ArgMatches) -> Said {
     let mut script = Vec::new();
     if let Some(shell) = matches.get_one::<clap_complete::Shell>("shell") {
         clap_complete::generate(*shell, &mut command(), "tidewright", &mut script);
     }
-    Ok(Said::answer(String::from_utf8_lossy(&script).into_owned(), Status::Done))
+    Said::answer(String::from_utf8_lossy(&script).into_owned(), Status::Done)
 }
 
 /// `tidewright manual`.

@@ -23,15 +23,12 @@ pub struct Opened {
 impl Opened {
     /// What keeps the engine from answering, drawn in the text where there is one.
     pub fn complain(&self, faults: Vec<Fault>, colour: bool) -> Said {
-        let drawn = match &self.text {
-            Some((path, text, spans)) => {
-                let problems: Vec<Problem> = faults.into_iter().map(|fault| spans.locate(fault)).collect();
-                complaint::draw(&problems, Some((path, text)), colour)
-            }
-            None => {
-                let problems: Vec<Problem> = faults.into_iter().map(Problem::from).collect();
-                complaint::draw(&problems, None, colour)
-            }
+        let drawn = if let Some((path, text, spans)) = &self.text {
+            let problems: Vec<Problem> = faults.into_iter().map(|fault| spans.locate(fault)).collect();
+            complaint::draw(&problems, Some((path, text)), colour)
+        } else {
+            let problems: Vec<Problem> = faults.into_iter().map(Problem::from).collect();
+            complaint::draw(&problems, None, colour)
         };
         Said::complaint(drawn, Status::BadInput)
     }

@@ -17,7 +17,9 @@ pub fn of(plan: &Plan, record: &Record, face: Face) -> String {
     lines.extend(patient_lines::gas(record, &plan.baseline, face));
     lines.push(goal(plan, record, face));
     if plan.now.paco2_is == "forecast" {
-        lines.push("Settings changed since the latest gas: PaCO2 now is a forecast, not a measurement.".to_owned());
+        lines.push(
+            "Settings changed since the latest gas: PaCO2 now is a forecast, not a measurement.".to_owned(),
+        );
     }
     lines.push(String::new());
     lines.extend(table(&columns(plan), face));
@@ -72,7 +74,8 @@ fn goal(plan: &Plan, record: &Record, face: Face) -> String {
     match target.asked {
         "profile" => {
             let [low, high] = target.band_mmhg;
-            let there = if target.met_by(plan.now.outcome.state.paco2_mmhg) { "already inside: " } else { "" };
+            let there =
+                if target.met_by(plan.now.outcome.state.paco2_mmhg) { "already inside: " } else { "" };
             format!(
                 "Goal PaCO2 {paco2}{ph}, {there}the band of {} is {} {}.",
                 record.profile().name,
@@ -131,9 +134,10 @@ fn verdict(line: &PlanLine, face: Face) -> String {
             format!("none known to be beyond, but unknown: {}", names.join(", "))
         }
     };
-    let goal = if line.on_target { "on the goal" } else { "NOT on the goal, the nearest that can be dialled" };
+    let goal =
+        if line.on_target { "on the goal" } else { "NOT on the goal, the nearest that can be dialled" };
     let exact = line.exact.map_or_else(String::new, |exact| {
-        let digits = if exact < 100.0 { 1 } else { 0 };
+        let digits = usize::from(exact < 100.0);
         format!(" (exactly {exact:.digits$})")
     });
     let blocked = if line.blocked_by.is_empty() {
@@ -169,15 +173,11 @@ fn lever(lever: &Lever, face: Face) -> String {
     // A tenth of a mmHg tells the levers apart; the forecast itself is not that sharp.
     let tenth = face.unit.from_mmhg(paco2);
     let digits = face.unit.digits() + 1;
-    let mut line = format!("  {step:<31} PaCO2 {tenth:+.digits$} {}", face.unit.word());
-    if let Some(ph) = lever.ph_change {
-        line.push_str(&format!(", pH {ph:+.2}"));
-    }
-    if let Some(driving) = lever.driving_pressure_change_cmh2o {
-        line.push_str(&format!(", driving {driving:+.1}"));
-    }
-    if let Some(power) = lever.mechanical_power_change_j_min {
-        line.push_str(&format!(", power {power:+.1}"));
-    }
-    line
+    let buys = [
+        Some(format!("  {step:<31} PaCO2 {tenth:+.digits$} {}", face.unit.word())),
+        lever.ph_change.map(|ph| format!("pH {ph:+.2}")),
+        lever.driving_pressure_change_cmh2o.map(|driving| format!("driving {driving:+.1}")),
+        lever.mechanical_power_change_j_min.map(|power| format!("power {power:+.1}")),
+    ];
+    buys.into_iter().flatten().collect::<Vec<_>>().join(", ")
 }

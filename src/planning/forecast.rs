@@ -191,7 +191,14 @@ impl<'a> Forecaster<'a> {
     }
 
     /// Plain arithmetic from the latest gas: `PaCO2·V̇A/V̇A'`, with what V̇CO2 and 1 − f have in common cancelled.
-    fn arithmetic(&self, reading: Reading, settings: &Settings, rate: f64, tidal: f64, co2: f64) -> Option<f64> {
+    fn arithmetic(
+        &self,
+        reading: Reading,
+        settings: &Settings,
+        rate: f64,
+        tidal: f64,
+        co2: f64,
+    ) -> Option<f64> {
         let gas = &self.baseline.gas;
         let room = tidal - self.series_with(reading, settings);
         let before = gas.rate_per_min * (gas.tidal_volume_ml - reading.series_ml);
@@ -231,7 +238,8 @@ impl<'a> Forecaster<'a> {
     /// space).
     pub fn state(&self, dialled: &Dialled) -> Option<State> {
         let paco2 = self.paco2_mmhg(dialled)?;
-        let fall = self.curve(dialled, paco2).map(|course| (self.now_paco2_mmhg - course.paco2_mmhg(60.0)).max(0.0));
+        let fall =
+            self.curve(dialled, paco2).map(|course| (self.now_paco2_mmhg - course.paco2_mmhg(60.0)).max(0.0));
         self.describe(dialled, paco2, fall)
     }
 
@@ -358,10 +366,8 @@ impl<'a> Forecaster<'a> {
             tidal_volume_ml: tidal,
             apparatus_ml: settings.apparatus_dead_space_ml,
             ln_ventilation: libm::log(ahead / before),
-            ln_readings: readings
-                .volume
-                .zip(readings.fraction)
-                .map(|(volume, fraction)| libm::log(volume / fraction)),
+            ln_readings:
+                readings.volume.zip(readings.fraction).map(|(volume, fraction)| libm::log(volume / fraction)),
             shift: libm::log(dialled.co2_factor) + other,
         }))
     }
@@ -370,7 +376,7 @@ impl<'a> Forecaster<'a> {
     pub fn outcome(&self, dialled: &Dialled, band_mmhg: Option<[f64; 2]>) -> Option<Outcome> {
         let state = self.state(dialled)?;
         let interval = self.interval(dialled, band_mmhg).unwrap_or_default();
-        Some(self.judge(state, interval))
+        Some(self.judge(&state, interval))
     }
 
     /// The outcome now: measured, without an interval, or forecast, with one.
@@ -380,7 +386,7 @@ impl<'a> Forecaster<'a> {
         } else {
             self.interval(&self.now(), band_mmhg).unwrap_or_default()
         };
-        Some(self.judge(self.state_now()?, interval))
+        Some(self.judge(&self.state_now()?, interval))
     }
 
     /// True where trapping rests on an assumed resistance.
@@ -388,9 +394,9 @@ impl<'a> Forecaster<'a> {
         self.baseline.mechanics.trapping_evidence() == super::baseline::mechanics::TrappingEvidence::Assumed
     }
 
-    fn judge(&self, state: State, interval: Interval) -> Outcome {
-        let limits = limits::verdicts(&self.baseline.profile.limits, &state, self.trapping_assumed());
-        Outcome { state, interval, limits }
+    fn judge(&self, state: &State, interval: Interval) -> Outcome {
+        let limits = limits::verdicts(&self.baseline.profile.limits, state, self.trapping_assumed());
+        Outcome { state: *state, interval, limits }
     }
 
     /// The band that counts as on target where no target was typed, mmHg.
@@ -412,8 +418,7 @@ fn pressure_breath(dialled: &Dialled, phases: Phases) -> Option<PressureBreath> 
 /// the alveolar fraction that the whole then leaves, not below 0.
 fn split_reading(baseline: &Baseline, belief: &Belief) -> (Reading, Option<f64>) {
     let exchange = &baseline.exchange;
-    let as_charted =
-        Reading { series_ml: exchange.series_ml, alveolar_fraction: exchange.alveolar_fraction };
+    let as_charted = Reading { series_ml: exchange.series_ml, alveolar_fraction: exchange.alveolar_fraction };
     if belief.gases() < 2 {
         return (as_charted, exchange.co2_output_ml_min);
     }
@@ -433,4 +438,3 @@ fn split_reading(baseline: &Baseline, belief: &Belief) -> (Reading, Option<f64>)
     let implied = output(useful, arterial, gas.temperature).ml_per_min();
     (Reading { series_ml, alveolar_fraction: Some(0.0) }, Some(implied))
 }
-

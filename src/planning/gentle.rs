@@ -38,7 +38,7 @@ struct Pair {
 
 /// Every settable pair, ready to be chosen from.
 pub struct Pairs {
-    pairs: Vec<Pair>,
+    settable: Vec<Pair>,
     /// The limits that exclude.
     limits: Vec<LimitId>,
     excess_now: Vec<Excess>,
@@ -116,7 +116,7 @@ impl Pairs {
             return Err(NoGentle::LoadUnknown);
         }
         let limits = limits.iter().map(|limit| limit.id).collect();
-        Ok(Self { pairs, limits, excess_now: excesses(now), target })
+        Ok(Self { settable: pairs, limits, excess_now: excesses(now), target })
     }
 
     /// The limits that exclude.
@@ -130,20 +130,23 @@ impl Pairs {
     /// [`NoGentle::NoneAllowed`] when no pair is allowed.
     pub fn choose(&self, without: Option<LimitId>) -> Result<Chosen, NoGentle> {
         let counts: Vec<bool> = self.limits.iter().map(|id| Some(*id) != without).collect();
-        let strict = |pair: &&Pair| pair.excess.iter().zip(&counts).all(|(excess, counts)| !counts || excess.none());
+        let strict =
+            |pair: &&Pair| pair.excess.iter().zip(&counts).all(|(excess, counts)| !counts || excess.none());
         let allowed = |pair: &&Pair| {
-            pair.excess.iter().zip(&self.excess_now).zip(&counts).all(|((excess, now), counts)| {
-                !counts || excess.no_worse_than(*now)
-            })
+            pair.excess
+                .iter()
+                .zip(&self.excess_now)
+                .zip(&counts)
+                .all(|((excess, now), counts)| !counts || excess.no_worse_than(*now))
         };
         let best = self
-            .gentlest(&self.pairs.iter().filter(strict).collect::<Vec<_>>())
-            .or_else(|| self.gentlest(&self.pairs.iter().filter(allowed).collect::<Vec<_>>()));
+            .gentlest(&self.settable.iter().filter(strict).collect::<Vec<_>>())
+            .or_else(|| self.gentlest(&self.settable.iter().filter(allowed).collect::<Vec<_>>()));
         if let Some(pair) = best {
             return Ok(Chosen { dialled: pair.dialled, on_target: true, miss_mmhg: 0.0 });
         }
         let miss = |pair: &Pair| (pair.paco2_mmhg - self.target.paco2_mmhg).abs();
-        self.pairs
+        self.settable
             .iter()
             .filter(allowed)
             .min_by(|a, b| {

@@ -34,9 +34,12 @@ const SCAN: usize = 400;
 
 /// The whole multiples of `step` within `range`.
 fn multiples(step: f64, [low, high]: [f64; 2]) -> impl Iterator<Item = f64> {
-    let first = (low / step - 1e-9).ceil() as i64;
-    let last = (high / step + 1e-9).floor() as i64;
-    (first..=last).map(move |n| n as f64 * step)
+    let first = (low / step - 1e-9).ceil();
+    let count = (high / step + 1e-9).floor() - first;
+    // Whole numbers far below 2^52, so each is exact.
+    std::iter::successors(Some(0.0), |n| Some(n + 1.0))
+        .take_while(move |n| *n <= count)
+        .map(move |n| (first + n) * step)
 }
 
 /// The rates that can be dialled, 1/min.
@@ -117,8 +120,7 @@ pub fn summit_of(forecaster: &Forecaster<'_>, dialled: &Dialled) -> Option<Summi
 pub fn exact_rate(forecaster: &Forecaster<'_>, dialled: &Dialled, target_mmhg: f64) -> Option<f64> {
     let needed = forecaster.needed_ml_min(target_mmhg, dialled.co2_factor);
     let rate = if volume_hangs_on_rate(dialled) {
-        let top = summit_rate(forecaster, dialled)
-            .unwrap_or_else(|| fastest_rate(dialled) * (1.0 - 1e-9));
+        let top = summit_rate(forecaster, dialled).unwrap_or_else(|| fastest_rate(dialled) * (1.0 - 1e-9));
         let own = forecaster.effective_rate(SLOWEST_PER_MIN); // below it the patient breathes on
         if own >= top {
             return None;

@@ -113,7 +113,11 @@ impl Mechanics {
                 _ => None,
             };
             let rate_per_min = reading.effective_rate(settings.rate_per_min);
-            reading.delivered.push(Some(Delivered { rate_per_min, total_known: any_total, pressure_volume_ml }));
+            reading.delivered.push(Some(Delivered {
+                rate_per_min,
+                total_known: any_total,
+                pressure_volume_ml,
+            }));
             if let Err(fault) = reading.read_lung(occasion.number, settings, measured, &mut cautions) {
                 faults.push(fault);
             }
@@ -155,6 +159,14 @@ impl Mechanics {
         }
         self.expiratory_resistance
             .or_else(|| self.inspiratory_resistance.map(|value| (value, TrappingEvidence::Assumed)))
+    }
+
+    /// Expiratory resistance to report, cmH2O·s/L: an assumption is made only once a compliance is known.
+    pub fn expiratory_report(&self) -> Option<f64> {
+        match self.compliance {
+            Some(_) => self.expiratory().map(|(value, _)| value),
+            None => self.expiratory_resistance.map(|(value, _)| value),
+        }
     }
 
     /// Expiratory resistance, cmH2O·s/L, if the inspiratory one were `what_if`: it follows only where it is assumed.
@@ -266,8 +278,7 @@ impl Mechanics {
         cautions: &mut Cautions,
     ) -> Result<(), Fault> {
         let Bedside { number, settings, measured, phases } = *at;
-        let corrects =
-            measured.circuit_compliance_ml_cmh2o.is_some() && measured.plateau_cmh2o.is_some();
+        let corrects = measured.circuit_compliance_ml_cmh2o.is_some() && measured.plateau_cmh2o.is_some();
         if measured.exhaled_tidal_volume_ml.is_some() || corrects {
             let volume = measured.exhaled_tidal_volume_ml.unwrap_or(set_ml);
             self.volume_per_set = Self::corrected_volume(number, volume, settings, measured)? / set_ml;
@@ -280,12 +291,9 @@ impl Mechanics {
             constant_flow: flow_pattern == FlowPattern::Constant,
             phases,
         };
-        if let (Some(peak), Some(plateau), None, true) = (
-            measured.peak_cmh2o,
-            measured.plateau_cmh2o,
-            measured.resistance_cmh2o_s_l,
-            breath.constant_flow,
-        ) {
+        if let (Some(peak), Some(plateau), None, true) =
+            (measured.peak_cmh2o, measured.plateau_cmh2o, measured.resistance_cmh2o_s_l, breath.constant_flow)
+        {
             if peak > plateau {
                 self.inspiratory_resistance =
                     Some(bedside::inspiratory_resistance(peak, plateau, breath.flow_l_s()));
@@ -449,10 +457,14 @@ impl Mechanics {
             self.trapping_unread = false;
             let auto = bedside::auto_peep_from_hold(pressure, above, &phases);
             let compliance = given_compliance.unwrap_or(volume_ml / (above - auto));
-            let resistance =
-                bedside::inspiratory_resistance_from_hold(pressure, above, auto, compliance, phases.inspiratory_s);
-            let share =
-                bedside::emptying_share(volume_ml, above, phases.expiratory_s, resistance.value());
+            let resistance = bedside::inspiratory_resistance_from_hold(
+                pressure,
+                above,
+                auto,
+                compliance,
+                phases.inspiratory_s,
+            );
+            let share = bedside::emptying_share(volume_ml, above, phases.expiratory_s, resistance.value());
             if given_compliance.is_none()
                 && (share > bedside::EMPTYING_LIMIT || compliance > bedside::LARGEST_COMPLIANCE)
             {
