@@ -6,6 +6,7 @@ pub mod answer;
 pub mod baseline;
 pub mod belief;
 pub mod caution;
+pub mod charted;
 pub mod course;
 pub mod forecast;
 pub mod gentle;
