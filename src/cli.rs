@@ -5,6 +5,7 @@ mod arguments;
 mod bedside;
 pub mod checked;
 pub mod complaint;
+mod review;
 mod source;
 mod trial;
 
@@ -91,6 +92,7 @@ fn dispatch(matches: &ArgMatches) -> Said {
     let said = match matches.subcommand() {
         Some(("plan", matches)) => answer::plan(matches, colour),
         Some(("forecast", matches)) => answer::forecast(matches, colour),
+        Some(("review", matches)) => review::review(matches, colour),
         Some(("check", matches)) => answer::check(matches, colour),
         Some(("profiles", matches)) => answer::profiles(matches, colour),
         Some(("cases", matches)) => answer::cases(matches, colour),

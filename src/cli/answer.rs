@@ -27,7 +27,7 @@ pub const DEMONSTRATION: &str = "injured-lungs";
 
 type Answer = Result<Said, Said>;
 
-fn face(matches: &ArgMatches) -> Face {
+pub(super) fn face(matches: &ArgMatches) -> Face {
     let unit = match matches.get_one::<String>("units").map(String::as_str) {
         Some("kPa") => PressureUnit::KPa,
         _ => PressureUnit::MmHg,

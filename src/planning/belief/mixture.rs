@@ -63,7 +63,14 @@ impl Mixture {
 
     /// The density of ln PaCO2 at `z`.
     pub fn density(&self, z: f64) -> f64 {
-        self.at(z).density
+        let mut density = 0.0;
+        for (weight, mean) in &self.points {
+            for deviation in [self.narrow, self.wide] {
+                let u = (z - mean) / deviation;
+                density += 0.5 * weight / deviation * libm::exp(-0.5 * u * u);
+            }
+        }
+        density / (2.0 * PI).sqrt()
     }
 
     /// The place below which a share `p` lies; `None` when the mass at infinity reaches down to it.
@@ -86,8 +93,8 @@ impl Mixture {
             let newton = miss / at.density;
             let step = newton / (1.0 - 0.5 * newton * at.slope / at.density);
             let next = z - step;
-            // Halley's steps shrink cubically: after one of 1e-5 the next would be far below rounding.
-            if step.abs() < 1e-5 && next >= low && next <= high {
+            // Halley's steps shrink cubically: after one of 1e-4 deviations the next would be far below 1e-9.
+            if step.abs() < 1e-4 * self.narrow && next >= low && next <= high {
                 return Some(next);
             }
             z = if next > low && next < high { next } else { f64::midpoint(low, high) };
