@@ -9,6 +9,8 @@ const NARROW: f64 = 0.25;
 const WIDE: f64 = 1.75;
 /// Weights below this cannot move a quantile by 1e-9.
 const NEGLIGIBLE: f64 = 1e-17;
+/// Means closer than this are one: rounding.
+const COINCIDE: f64 = 1e-13;
 
 /// Points with weights, each spread by the same shape. Mass that is missing from 1 lies at infinity.
 #[derive(Debug, Clone, PartialEq)]
@@ -29,7 +31,15 @@ struct At {
 impl Mixture {
     /// From `(weight, mean)` pairs and the standard deviation `S` of the next gas.
     pub fn new(points: impl Iterator<Item = (f64, f64)>, deviation: f64) -> Self {
-        let points: Vec<_> = points.filter(|(weight, _)| *weight > NEGLIGIBLE).collect();
+        let mut kept: Vec<(f64, f64)> = Vec::new();
+        for (weight, mean) in points.filter(|(weight, _)| *weight > NEGLIGIBLE) {
+            match kept.last_mut() {
+                // Where every breath left the same room, the dead space cancels and all points coincide.
+                Some((heavier, at)) if (mean - *at).abs() < COINCIDE => *heavier += weight,
+                _ => kept.push((weight, mean)),
+            }
+        }
+        let points = kept;
         let mass = points.iter().map(|(weight, _)| weight).sum();
         Self { points, narrow: NARROW.sqrt() * deviation, wide: WIDE.sqrt() * deviation, mass }
     }
