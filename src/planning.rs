@@ -15,6 +15,7 @@ pub mod limits;
 pub mod outcome;
 pub mod plan;
 pub mod remarks;
+pub mod review;
 pub mod solve;
 pub mod target;
 pub mod trial;

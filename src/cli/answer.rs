@@ -29,7 +29,7 @@ pub const DEMONSTRATION: &str = "injured-lungs";
 pub type Answer = Result<Said, Said>;
 
 /// How the user wants texts shown.
-pub fn face(matches: &ArgMatches) -> Face {
+pub(super) fn face(matches: &ArgMatches) -> Face {
     let unit = match matches.get_one::<String>("units").map(String::as_str) {
         Some("kPa") => PressureUnit::KPa,
         _ => PressureUnit::MmHg,

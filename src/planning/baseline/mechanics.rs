@@ -79,23 +79,28 @@ struct PlateauReading {
 }
 
 impl Mechanics {
+    /// A patient under volume control of whom only the delivered volume and the own rate are known.
+    pub const fn of_volume_control(volume_per_set: f64, trigger_rate_per_min: Option<f64>) -> Self {
+        Self {
+            compliance: None,
+            inspiratory_resistance: None,
+            expiratory_resistance: None,
+            trapping_unread: false,
+            volume_per_set,
+            pressure_scale: None,
+            trigger_rate_per_min,
+            delivered: Vec::new(),
+            measured_pressure_breath: None,
+            plateau_reading: None,
+        }
+    }
+
     /// Reads the occasions in order.
     ///
     /// # Errors
     /// Readings that contradict each other, each with its place.
     pub fn read(occasions: &[Occasion]) -> Result<(Self, Cautions), Vec<Fault>> {
-        let mut reading = Self {
-            compliance: None,
-            inspiratory_resistance: None,
-            expiratory_resistance: None,
-            trapping_unread: false,
-            volume_per_set: 1.0,
-            pressure_scale: None,
-            trigger_rate_per_min: None,
-            delivered: Vec::with_capacity(occasions.len()),
-            measured_pressure_breath: None,
-            plateau_reading: None,
-        };
+        let mut reading = Self::of_volume_control(1.0, None);
         let mut any_total = false;
         let (mut cautions, mut faults) = (Cautions::default(), Vec::new());
         for occasion in occasions {
