@@ -14,6 +14,7 @@ pub mod levers;
 pub mod limits;
 pub mod outcome;
 pub mod plan;
+pub mod reckoning;
 pub mod remarks;
 pub mod review;
 pub mod solve;
