@@ -20,6 +20,7 @@ pub mod review;
 pub mod solve;
 pub mod target;
 pub mod trial;
+pub mod weaning;
 
 use crate::case::profile::Figures;
 use crate::case::record::{Record, Steadiness};
