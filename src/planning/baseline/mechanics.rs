@@ -176,8 +176,10 @@ impl Mechanics {
 
     /// Expiratory resistance, cmH2O·s/L, if the inspiratory one were `what_if`: it follows only where it is assumed.
     pub fn expiratory_if_resistance(&self, what_if: Option<f64>) -> Option<f64> {
+        // Where no resistance was known at all, one under trial makes trapping known too.
+        let crude = matches!(self.compliance, Some((_, Worth::Crude)));
         match self.expiratory_resistance {
-            _ if self.trapping_unread => None,
+            _ if self.trapping_unread && !(crude && what_if.is_some()) => None,
             Some((value, _)) => Some(value),
             None => what_if.or(self.inspiratory_resistance),
         }
@@ -391,9 +393,11 @@ impl Mechanics {
             return Ok(());
         }
         let better = |worth: Worth| self.compliance.is_none_or(|(_, had)| had <= worth);
-        let resistances = self.inspiratory_resistance.zip(self.expiratory().map(|(value, _)| value));
+        let expiratory = self.expiratory_resistance.map(|(value, _)| value).or(self.inspiratory_resistance);
+        let resistances = self.inspiratory_resistance.zip(expiratory);
         if let Some((inspiratory, expiratory)) = resistances {
-            if !better(Worth::Volume) {
+            // A resistance typed in this entry makes it the latest that yields a compliance.
+            if !better(Worth::Volume) && measured.resistance_cmh2o_s_l.is_none() {
                 return Ok(());
             }
             let found = match at.auto_peep() {
@@ -421,6 +425,7 @@ impl Mechanics {
                 ));
             };
             self.plateau_reading = None;
+            self.trapping_unread = false;
             self.compliance = Some((compliance, Worth::Volume));
         } else if better(Worth::Crude) {
             self.compliance = Some((volume_ml / pressure, Worth::Crude));
@@ -512,12 +517,19 @@ impl Mechanics {
         let Bedside { settings, measured, phases, .. } = *at;
         let (Some(auto), None) = (at.auto_peep(), measured.expiratory_resistance_cmh2o_s_l) else { return };
         let Some((compliance, _)) = self.compliance else { return };
-        let volume_ml = match settings.inflation {
-            Inflation::Volume { tidal_volume_ml, .. } => Some(tidal_volume_ml * self.volume_per_set),
-            Inflation::Pressure { .. } => self.measured_pressure_breath.map(|(_, volume)| volume),
+        let driving = match settings.inflation {
+            Inflation::Volume { tidal_volume_ml, .. } => {
+                Some(tidal_volume_ml * self.volume_per_set / compliance)
+            }
+            // Without a volume of this entry the holds alone give the driving pressure.
+            Inflation::Pressure { .. } if measured.exhaled_tidal_volume_ml.is_none() => {
+                at.plateau_above_peep().map(|above| above - auto).filter(|driving| *driving > 0.0)
+            }
+            Inflation::Pressure { .. } => {
+                self.measured_pressure_breath.map(|(_, volume_ml)| volume_ml / compliance)
+            }
         };
-        let Some(volume_ml) = volume_ml else { return };
-        let driving = volume_ml / compliance;
+        let Some(driving) = driving else { return };
         let litres = compliance / 1000.0;
         let had = self.expiratory_resistance;
         let resistance = if auto > 0.0 {
