@@ -178,6 +178,8 @@ pub fn bounds(limit: &LimitVerdict, face: Face) -> String {
         (LimitId::Paco2, word) => format!(" {word}"),
         (LimitId::Paco2FallPerHour, word) => format!(" {word}/h"),
         _ if limit.unit == "1" => String::new(),
+        // "≤35/min", as people write it.
+        _ if limit.unit.starts_with("1/") => limit.unit.trim_start_matches('1').to_owned(),
         _ => format!(" {}", limit.unit),
     };
     match (limit.min, limit.max) {
