@@ -18,9 +18,7 @@ pub fn of(plan: &Plan, record: &Record, face: Face) -> String {
     lines.extend(patient_lines::gas(record, &plan.baseline, face));
     lines.push(goal(plan, record, face));
     if plan.now.paco2_is == "forecast" {
-        lines.push(
-            "Settings changed since the latest gas: PaCO2 now is forecast, not measured.".to_owned(),
-        );
+        lines.push("Settings changed since the latest gas: PaCO2 now is forecast, not measured.".to_owned());
     }
     lines.push(String::new());
     lines.extend(table(&columns(plan), face));

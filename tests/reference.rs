@@ -1,0 +1,11 @@
+//! The engine against outside witnesses: published values, and tables made by scipy, iapws and pint.
+//!
+//! The tables stand in `tests/reference/`; each row names its source. The Python scripts beside them make the computed
+//! ones anew, and `.ci/run` compares.
+
+#[path = "reference/computed.rs"]
+mod computed;
+#[path = "reference/published.rs"]
+mod published;
+#[path = "reference/table.rs"]
+mod table;
