@@ -3,7 +3,7 @@
 use tidewright::case::read;
 use tidewright::physiology::breath::pressure_control::PressureBreath;
 use tidewright::physiology::breath::volume_control::VolumeBreath;
-use tidewright::physiology::breath::{Breath, Lung, Phases, bedside};
+use tidewright::physiology::breath::{Breath, Lung, Phases};
 use tidewright::physiology::{acid_base, carbon_dioxide, stores};
 use tidewright::planning::plan::{Request, plan};
 use tidewright::planning::target::Asked;
