@@ -88,7 +88,10 @@ impl Bundle {
     }
 
     fn add(&mut self, url: &str, resource: Map<String, Value>) {
-        self.entries.push(json!({ "fullUrl": url, "resource": resource }));
+        let mut entry = Map::new();
+        entry.insert("fullUrl".to_owned(), json!(url));
+        entry.insert("resource".to_owned(), Value::Object(resource));
+        self.entries.push(Value::Object(entry));
     }
 
     fn finish(self) -> Value {

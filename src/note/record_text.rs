@@ -36,7 +36,8 @@ fn line(text: &str, first: &str, later: &str, face: Face) -> String {
 fn table_row(row: &[String], face: Face) -> String {
     let [name, value, others @ .., verdict] = row else { return String::new() };
     let value = if value.is_empty() { String::new() } else { format!(": {value}") };
-    let others: String = others.iter().filter(|it| !it.is_empty()).map(|it| format!(" ({it})")).collect();
+    let others: Vec<&str> = others.iter().map(String::as_str).filter(|it| !it.is_empty()).collect();
+    let others = if others.is_empty() { String::new() } else { format!(" ({})", others.join(", ")) };
     let text = format!("{verdict:<VERDICT$}{name}{value}{others}");
     line(&text, "  ", &" ".repeat(VERDICT + 4), face)
 }

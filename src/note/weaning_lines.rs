@@ -7,6 +7,7 @@ use crate::case::entry::TrialOutcome;
 use crate::planning::weaning::{
     Assessment, BEDSIDE, Criterion, Index, StopRow, StopVerdict, TrialCourse, Verdict,
 };
+use crate::quantity::show::with_unit;
 use crate::quantity::unit::Dimension;
 
 /// The table of readiness and the indices.
@@ -48,16 +49,15 @@ pub fn said(assessment: &Assessment) -> String {
 }
 
 fn value(criterion: &Criterion, face: Face) -> String {
-    let plain = criterion.value.map(|value| face.value(value, criterion.dimension));
-    let Some([spo2, fio2]) = criterion.saturation_on else {
-        return match (criterion.id, plain) {
-            ("oxygenation", Some(ratio)) => format!("PaO2/FiO2 {ratio} {}", face.unit.word()),
-            (_, Some(value)) => value,
-            (_, None) => String::new(),
-        };
-    };
-    let saturation = format!("SpO2 {:.0} % on {}", spo2 * 100.0, face.value(fio2, Dimension::Fraction));
-    plain.map_or(saturation.clone(), |ratio| format!("{saturation}; {ratio} {}", face.unit.word()))
+    let plain = criterion.value.map(|value| match criterion.id {
+        "rapid_shallow_breathing_index" => format!("{value:.0}/min/L"),
+        "oxygenation" => format!("PaO2/FiO2 {}", face.gas(value)),
+        _ => with_unit(value, criterion.dimension, face.unit),
+    });
+    let saturation = criterion.saturation_on.map(|[spo2, fio2]| {
+        format!("SpO2 {:.0} % on FiO2 {}", spo2 * 100.0, face.value(fio2, Dimension::Fraction))
+    });
+    saturation.into_iter().chain(plain).collect::<Vec<_>>().join("; ")
 }
 
 fn index(index: &Index) -> String {
