@@ -1,5 +1,16 @@
 //! `review` on open ICU gases, and on files that are wrong.
 
+#![allow(
+    clippy::unwrap_used,
+    clippy::panic,
+    clippy::indexing_slicing,
+    clippy::doc_markdown,
+    clippy::cast_precision_loss,
+    clippy::too_many_lines,
+    clippy::format_push_string,
+    clippy::float_cmp,
+    reason = "a test may stop at the first surprise, and its tables are long"
+)]
 use std::fmt::Write as _;
 use std::process::Output;
 

@@ -150,6 +150,7 @@ fn open(name: &str) -> Result<Box<dyn Read>, Said> {
 }
 
 /// A closed pipe ends quietly.
+#[expect(clippy::needless_pass_by_value, reason = "the shape `or_else` hands it over in")]
 fn quiet_if_closed(error: io::Error) -> Result<(), Said> {
     if error.kind() == io::ErrorKind::BrokenPipe {
         return Err(Said::answer(String::new(), Status::Done));
@@ -192,7 +193,7 @@ impl Reviewer<'_> {
             self.rows += 1;
             let line = record.position().map_or(0, csv::Position::line);
             match columns.row(&record, header.len()) {
-                Ok(row) => self.take(row, line)?,
+                Ok(row) => self.take(&row, line)?,
                 Err(message) => self.bad(line, message),
             }
         }
@@ -228,9 +229,9 @@ impl Reviewer<'_> {
         }
     }
 
-    fn take(&mut self, row: Row, line: u64) -> Result<(), Said> {
+    fn take(&mut self, row: &Row, line: u64) -> Result<(), Said> {
         if self.stay.as_ref().is_none_or(|(id, _)| *id != row.stay) {
-            self.begin(&row, line)?;
+            self.begin(row, line)?;
         }
         let Some((_, stay)) = &mut self.stay else { return Ok(()) };
         stay.know(&row.patient);
@@ -257,7 +258,7 @@ impl Reviewer<'_> {
             if score.after_change {
                 self.changed.add(&score);
             }
-            self.row_out(&row, &score).or_else(quiet_if_closed)?;
+            self.row_out(row, &score).or_else(quiet_if_closed)?;
         }
         Ok(())
     }
@@ -317,7 +318,8 @@ impl Reviewer<'_> {
     }
 
     fn complaints(&self) -> String {
-        self.bad_rows.iter().map(|bad| format!("left out, line {}: {}\n", bad.line, bad.message)).collect()
+        let named = self.bad_rows.iter().map(|bad| format!("left out, line {}: {}\n", bad.line, bad.message));
+        named.collect::<Vec<_>>().concat()
     }
 
     fn answer(self) -> Review {

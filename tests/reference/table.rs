@@ -33,7 +33,7 @@ pub fn maybe(row: &Table, key: &str) -> Option<f64> {
 /// The worst disagreement of a comparison, and the row it stood in.
 pub struct Worst {
     limit: f64,
-    worst: f64,
+    off: f64,
     at: String,
     count: usize,
 }
@@ -41,7 +41,7 @@ pub struct Worst {
 impl Worst {
     /// None yet; more than `limit` will not do.
     pub fn allowed(limit: f64) -> Self {
-        Self { limit, worst: 0.0, at: String::new(), count: 0 }
+        Self { limit, off: 0.0, at: String::new(), count: 0 }
     }
 
     /// Compares two values by the larger of an absolute and a relative measure: |found − expected| over
@@ -49,8 +49,8 @@ impl Worst {
     pub fn compare(&mut self, found: f64, expected: f64, floor: f64, at: impl Into<String>) {
         let off = (found - expected).abs() / expected.abs().max(floor);
         self.count += 1;
-        if !(off <= self.worst) {
-            self.worst = off;
+        if off.is_nan() || off > self.off {
+            self.off = if off.is_nan() { f64::INFINITY } else { off };
             self.at = format!("{}: found {found}, expected {expected}", at.into());
         }
     }
@@ -59,9 +59,9 @@ impl Worst {
     pub fn judge(self, least: usize) {
         assert!(self.count >= least, "only {} values compared", self.count);
         assert!(
-            self.worst <= self.limit,
+            self.off <= self.limit,
             "off by {:e} (allowed {:e}) at {}",
-            self.worst,
+            self.off,
             self.limit,
             self.at
         );

@@ -131,7 +131,19 @@ impl Columns {
             Some(mmhg) => mmhg,
             None => PressureUnit::KPa.to_mmhg(needed(number(self.pco2_kpa, "pco2_kpa")?, "pco2")?),
         };
-        let patient = self.patient(&text, &checked)?;
+        let mut patient = Patient {
+            sex: text(self.sex).map(sex).transpose()?,
+            airway: text(self.airway).map(airway).transpose()?,
+            ..Patient::default()
+        };
+        for (at, name, key) in [
+            (self.height, "height_cm", Key::Height),
+            (self.predicted_weight, "predicted_weight_kg", Key::PredictedWeight),
+        ] {
+            if let Some(slot) = patient_slot(&mut patient, key) {
+                *slot = checked(at, name, key)?;
+            }
+        }
         let gas = PastGas {
             hours,
             rate_set_per_min: rate_set,
@@ -150,27 +162,6 @@ impl Columns {
             ));
         }
         Ok(Row { stay, patient, gas })
-    }
-
-    fn patient<'r>(
-        &self,
-        text: &dyn Fn(Option<usize>) -> Option<&'r str>,
-        checked: &dyn Fn(Option<usize>, &str, Key) -> Result<Option<f64>, String>,
-    ) -> Result<Patient, String> {
-        let mut patient = Patient {
-            sex: text(self.sex).map(|word| sex(word)).transpose()?,
-            airway: text(self.airway).map(|word| airway(word)).transpose()?,
-            ..Patient::default()
-        };
-        for (at, name, key) in [
-            (self.height, "height_cm", Key::Height),
-            (self.predicted_weight, "predicted_weight_kg", Key::PredictedWeight),
-        ] {
-            if let Some(slot) = patient_slot(&mut patient, key) {
-                *slot = checked(at, name, key)?;
-            }
-        }
-        Ok(patient)
     }
 }
 

@@ -56,7 +56,7 @@ pub fn of(review: &Review, within_hours: f64, face: Face) -> String {
     match &review.fitted {
         Some(fitted) => lines.extend(steadiness(fitted, review)),
         None => {
-            lines.push("Fewer than 30 forecasts: too few to fit steadiness figures of your own.".to_owned())
+            lines.push("Fewer than 30 forecasts: too few to fit steadiness figures of your own.".to_owned());
         }
     }
     lines.push(String::new());
