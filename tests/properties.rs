@@ -18,7 +18,7 @@ mod course;
 mod forecast;
 #[path = "properties/plan.rs"]
 mod plan;
-#[path = "properties/spelling.rs"]
-mod spelling;
 #[path = "properties/sound.rs"]
 mod sound;
+#[path = "properties/spelling.rs"]
+mod spelling;

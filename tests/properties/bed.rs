@@ -287,7 +287,13 @@ pub fn plain(_: Key, value: f64) -> String {
     format!("{value:?}")
 }
 
-/// Enough cases to find a slip, few enough for a short run.
+/// Enough cases to find a slip, few enough for a short run; `TIDEWRIGHT_CASES=20` runs twenty times as many.
 pub fn cases(count: u32) -> ProptestConfig {
-    ProptestConfig { cases: count, max_global_rejects: 100_000, failure_persistence: None, ..ProptestConfig::default() }
+    let times = std::env::var("TIDEWRIGHT_CASES").ok().and_then(|text| text.parse().ok()).unwrap_or(1);
+    ProptestConfig {
+        cases: count * times,
+        max_global_rejects: 10_000_000,
+        failure_persistence: None,
+        ..ProptestConfig::default()
+    }
 }

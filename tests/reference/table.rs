@@ -58,12 +58,6 @@ impl Worst {
     /// Fails when anything was further off than allowed, or when fewer than `least` values were compared.
     pub fn judge(self, least: usize) {
         assert!(self.count >= least, "only {} values compared", self.count);
-        assert!(
-            self.off <= self.limit,
-            "off by {:e} (allowed {:e}) at {}",
-            self.off,
-            self.limit,
-            self.at
-        );
+        assert!(self.off <= self.limit, "off by {:e} (allowed {:e}) at {}", self.off, self.limit, self.at);
     }
 }
