@@ -74,7 +74,7 @@ fn a_value_in_the_wrong_unit_is_asked_about_by_its_flag() {
         (ran.code, ran.err.as_str()),
         (
             Some(2),
-            "error: --paco2: PaCO2 of 5.3 mmHg is below what is plausible, 10 to 150 mmHg\n\
+            "error: --paco2: PaCO2 of 5.3 mmHg is below what is plausible, 10 to 200 mmHg\n\
              help: 5.3 kPa would be plausible (39.8 mmHg): if that was meant, write --paco2 \"5.3 kPa\"\n"
         )
     );
