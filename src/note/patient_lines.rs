@@ -1,6 +1,6 @@
 //! The lines that say who the patient is, what the gas says, and where the numbers come from.
 
-use super::face::Face;
+use super::face::{Face, TOGETHER};
 use crate::case::entry::{Airway, Sex};
 use crate::case::record::Record;
 use crate::planning::answer::BaselineReport;
@@ -98,6 +98,7 @@ pub fn gas(record: &Record, baseline: &BaselineReport, face: Face) -> Vec<String
             _ => format!("PaCO2 within {band}: ventilation fits the CO2 made."),
         }
     };
+    let parts: Vec<String> = parts.iter().map(|part| part.replace(' ', &TOGETHER.to_string())).collect();
     vec![face.wrapped(&parts.join(face.dot()), "", "  "), face.wrapped(&meaning, "", "  ")]
 }
 
@@ -135,7 +136,7 @@ pub fn origins(baseline: &BaselineReport, face: Face) -> Vec<String> {
     lines.push(format!("Respiratory-system compliance {compliance} mL/cmH2O"));
     lines.push(format!(
         "Resistance {inspiratory} cmH2O{}s/L in, {expiratory} out{trapping}",
-        if face.ascii { "-" } else { "·" }
+        if face.ascii { "." } else { "·" }
     ));
     if let Some(ratio) = baseline.ventilatory_ratio {
         lines.push(format!("Ventilatory ratio {} (about 1 in health)", face.value(ratio, Dimension::Number)));
