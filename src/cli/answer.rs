@@ -2,7 +2,7 @@
 
 use clap::ArgMatches;
 
-use super::arguments::command;
+use super::arguments::{command, flag_of};
 use super::checked::{Checked, CheckedFile};
 use super::source::{Opened, bytes, named, open, sentence};
 use super::{Colours, Said, Status, complaint, trial};
@@ -90,8 +90,11 @@ pub fn asked(matches: &ArgMatches, colours: Colours) -> Result<Asked, Said> {
     Ok(Asked::Profile)
 }
 
+/// The goal's flags read the quantity of another input: what they say must name the flag that was typed.
 fn renamed(mut problem: Problem, key: &'static str) -> Problem {
+    let typed = |key: &str| format!("--{} ", flag_of(key));
     for place in &mut problem.places {
+        problem.help = problem.help.replace(&typed(place.key), &typed(key));
         place.key = key;
     }
     problem

@@ -1,6 +1,6 @@
 //! How a text is shown: units of gas pressure, plain ASCII or not, and the width it keeps to.
 
-use crate::quantity::show::{PressureUnit, show};
+use crate::quantity::show::{PressureUnit, paco2, show};
 use crate::quantity::unit::Dimension;
 
 /// The width texts keep to.
@@ -31,10 +31,27 @@ impl Face {
         format!("{} {}", self.value(mmhg, Dimension::GasPressure), self.unit.word())
     }
 
-    /// A range of gas pressures, without its unit.
+    /// A forecast PaCO2, without its unit; one that no patient reaches is only said to be over 200 mmHg.
+    pub fn paco2(self, mmhg: f64) -> String {
+        paco2(mmhg, self.unit)
+    }
+
+    /// The same where it may be unknown.
+    pub fn known_paco2(self, mmhg: Option<f64>) -> String {
+        mmhg.map_or_else(|| "unknown".to_owned(), |mmhg| self.paco2(mmhg))
+    }
+
+    /// A range of PaCO2, without its unit; without an upper end where that is beyond what a patient reaches.
     pub fn gas_range(self, low: Option<f64>, high: Option<f64>) -> String {
-        let end = |mmhg: Option<f64>| self.known(mmhg, Dimension::GasPressure);
-        format!("{}{}{}", end(low), self.dash(), end(high))
+        let end = |mmhg: f64| self.paco2(mmhg);
+        match (low, high) {
+            (Some(low), Some(_)) if end(low).starts_with("over") => end(low),
+            (Some(low), Some(high)) if end(high).starts_with("over") => format!("over {}", end(low)),
+            (Some(low), Some(high)) => format!("{}{}{}", end(low), self.dash(), end(high)),
+            // No upper end: some of the chance lies where no breath passes the dead space.
+            (Some(low), None) => format!("over {}", end(low)),
+            _ => "unknown".to_owned(),
+        }
     }
 
     /// A dash between the ends of a range.

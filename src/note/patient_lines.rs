@@ -92,7 +92,7 @@ pub fn gas(record: &Record, baseline: &BaselineReport, face: Face) -> Vec<String
         let [low, high] = NORMAL_PH;
         match gas.ph {
             Some(ph) if !(low..=high).contains(&ph) => format!(
-                "PaCO2 within {band}, yet pH {}: the bicarbonate explains it, acute or as this patient's habit.",
+                "PaCO2 within {band}, yet pH {}: look at the bicarbonate, and at what this patient is used to.",
                 face.value(ph, Dimension::Ph)
             ),
             _ => format!("PaCO2 within {band}: ventilation fits the CO2 made."),
@@ -104,7 +104,7 @@ pub fn gas(record: &Record, baseline: &BaselineReport, face: Face) -> Vec<String
 /// Where the numbers come from, one line each.
 pub fn origins(baseline: &BaselineReport, face: Face) -> Vec<String> {
     let mut lines = Vec::new();
-    let output = face.known(baseline.co2_production_ml_min, Dimension::GasOutput);
+    let estimated = baseline.co2_evidence == Co2Evidence::Estimated;
     let how = match baseline.co2_evidence {
         Co2Evidence::DeadSpace => "from the measured dead space",
         Co2Evidence::Co2Production => "measured",
@@ -112,10 +112,14 @@ pub fn origins(baseline: &BaselineReport, face: Face) -> Vec<String> {
         Co2Evidence::Estimated if baseline.co2_production_ml_min.is_some() => "estimated",
         Co2Evidence::Estimated => "no weight to estimate it from",
     };
-    lines.push(format!("CO2 output {output} mL/min ({how})"));
+    let output = with_unit(baseline.co2_production_ml_min, Dimension::GasOutput, "mL/min", face);
+    lines.push(format!("CO2 output {output} ({how})"));
     let share = baseline.dead_space_fraction.map_or_else(
         || "VD/VT unknown".to_owned(),
-        |fraction| format!("VD/VT {}", face.value(fraction, Dimension::Fraction)),
+        |fraction| {
+            let mark = if estimated { " (estimated)" } else { "" };
+            format!("VD/VT {}{mark}", face.value(fraction, Dimension::Fraction))
+        },
     );
     let series = face.value(baseline.series_dead_space_ml, Dimension::Volume);
     let fraction = baseline.alveolar_dead_space_fraction.map_or_else(
@@ -123,20 +127,9 @@ pub fn origins(baseline: &BaselineReport, face: Face) -> Vec<String> {
         |f| format!("{:.0} % of the rest alveolar", f * 100.0),
     );
     lines.push(format!("{share}: {series} mL airway and apparatus, {fraction}"));
-    let compliance = face.known(baseline.compliance_ml_cmh2o, Dimension::Compliance);
-    let inspiratory = face.known(baseline.inspiratory_resistance_cmh2o_s_l, Dimension::Resistance);
-    let expiratory = face.known(baseline.expiratory_resistance_cmh2o_s_l, Dimension::Resistance);
-    let trapping = match baseline.trapping_evidence {
-        TrappingEvidence::Measured => " (measured)",
-        TrappingEvidence::Given => " (given)",
-        TrappingEvidence::Assumed => " (assumed equal)",
-        TrappingEvidence::Unknown => "",
-    };
-    lines.push(format!("Respiratory-system compliance {compliance} mL/cmH2O"));
-    lines.push(format!(
-        "Resistance {inspiratory} cmH2O{}s/L in, {expiratory} out{trapping}",
-        if face.ascii { "-" } else { "·" }
-    ));
+    let compliance = with_unit(baseline.compliance_ml_cmh2o, Dimension::Compliance, "mL/cmH2O", face);
+    lines.push(format!("Respiratory-system compliance {compliance}"));
+    lines.push(resistance(baseline, face));
     if let Some(ratio) = baseline.ventilatory_ratio {
         lines.push(format!("Ventilatory ratio {} (about 1 in health)", face.value(ratio, Dimension::Number)));
     }
@@ -148,4 +141,28 @@ pub fn origins(baseline: &BaselineReport, face: Face) -> Vec<String> {
         ));
     }
     lines
+}
+
+/// "25 mL/cmH2O", or "unknown" without a unit after it.
+fn with_unit(value: Option<f64>, dimension: Dimension, unit: &str, face: Face) -> String {
+    value.map_or_else(|| "unknown".to_owned(), |value| format!("{} {unit}", face.value(value, dimension)))
+}
+
+/// "Resistance 13 cmH2O·s/L in, 26 out (trapping measured)"
+fn resistance(baseline: &BaselineReport, face: Face) -> String {
+    let [inspiratory, expiratory] =
+        [baseline.inspiratory_resistance_cmh2o_s_l, baseline.expiratory_resistance_cmh2o_s_l];
+    if inspiratory.is_none() && expiratory.is_none() {
+        return "Resistance unknown".to_owned();
+    }
+    let unit = if face.ascii { "cmH2O-s/L" } else { "cmH2O·s/L" };
+    let inspiratory = with_unit(inspiratory, Dimension::Resistance, unit, face);
+    let expiratory = face.known(expiratory, Dimension::Resistance);
+    let trapping = match baseline.trapping_evidence {
+        TrappingEvidence::Measured => " (trapping measured)",
+        TrappingEvidence::Given => " (given)",
+        TrappingEvidence::Assumed => " (assumed equal)",
+        TrappingEvidence::Unknown => "",
+    };
+    format!("Resistance {inspiratory} in, {expiratory} out{trapping}")
 }

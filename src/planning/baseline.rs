@@ -174,14 +174,13 @@ impl Blood {
         if let (Some(ph), Some(typed)) = (gas.ph, gas.bicarbonate_mmol_l) {
             let computed = acid_base::bicarbonate(ph, drawn.paco2_mmhg);
             if (computed - typed).abs() > 2.0 {
-                cautions.say(
-                    "gas_disagrees",
+                cautions.say_gas("gas_disagrees", |gas| {
                     format!(
-                        "The gas does not agree with itself: pH {ph:.2} and PaCO2 {:.0} mmHg give a bicarbonate of \
-                         {computed:.1} mmol/L, charted is {typed:.1}. Check the typed values against the report.",
-                        drawn.paco2_mmhg
-                    ),
-                );
+                        "The gas does not agree with itself: pH {ph:.2} and PaCO2 {} give a bicarbonate of {computed:.1} \
+                         mmol/L, charted is {typed:.1}. Check the typed values against the report.",
+                        gas(drawn.paco2_mmhg)
+                    )
+                });
             }
         }
         let ph = gas.ph.or_else(|| {
