@@ -5,6 +5,7 @@ use crate::case::profile::LimitId;
 use crate::planning::answer::{Now, SettingsReport};
 use crate::planning::limits::{LimitVerdict, Verdict, rests_on_trapping};
 use crate::planning::outcome::Outcome;
+use crate::quantity::show::number;
 use crate::quantity::unit::Dimension;
 
 /// Width of the row names.
@@ -83,7 +84,7 @@ fn dialled(columns: &[Column<'_>], face: Face, rows: &mut Vec<String>) {
             rows.push(row(name, cells.into_iter().map(marked)));
         }
     };
-    line("set rate, 1/min", |settings| Some(settings.rate_per_min), Dimension::Rate, Row::Always);
+    line("set rate, breaths/min", |settings| Some(settings.rate_per_min), Dimension::Rate, Row::Always);
     line("set tidal volume, mL", |settings| settings.tidal_volume_ml, Dimension::Volume, Row::Always);
     line(
         "inspiratory pressure, cmH2O",
@@ -181,13 +182,15 @@ pub const fn dimension(id: LimitId) -> Dimension {
     }
 }
 
-/// The bounds of a limit in words: "≤30 cmH2O", "4–8 mL/kg".
+/// The bounds of a limit in words: "≤30 cmH2O", "4–8 mL/kg", "≤35/min".
 pub fn bounds(limit: &LimitVerdict, face: Face) -> String {
     let shown = |value: f64| face.value(value, dimension(limit.id));
     let unit = match (limit.id, face.unit.word()) {
         (LimitId::Paco2, word) => format!(" {word}"),
         (LimitId::Paco2FallPerHour, word) => format!(" {word}/h"),
         _ if limit.unit == "1" => String::new(),
+        // "35 1/min" could be read as 351.
+        _ if limit.unit.starts_with("1/") => limit.unit.trim_start_matches('1').to_owned(),
         _ => format!(" {}", limit.unit),
     };
     match (limit.min, limit.max) {
@@ -207,7 +210,18 @@ pub fn cell(limit: &LimitVerdict, trapping_assumed: bool, face: Face) -> String 
         _ => "",
     };
     debug_assert!(mark.is_empty() || rests_on_trapping(limit.id));
-    let shown = face.value(value, dimension(limit.id));
+    let mut shown = face.value(value, dimension(limit.id));
+    // "8 beyond" would stand oddly beside a bound of 8: a digit more tells them apart.
+    let bounds = [limit.min, limit.max].into_iter().flatten();
+    let bounds: Vec<String> = bounds.map(|bound| face.value(bound, dimension(limit.id))).collect();
+    if limit.verdict == Verdict::Beyond && bounds.contains(&shown) {
+        let in_unit = match dimension(limit.id) {
+            Dimension::GasPressure | Dimension::PressurePerHour => face.unit.from_mmhg(value),
+            _ => value,
+        };
+        let finer = (1..4).map(|digits| number(in_unit, digits)).find(|text| !bounds.contains(text));
+        shown = finer.unwrap_or(shown);
+    }
     format!("{mark}{shown} {}", limit.verdict.word())
 }
 

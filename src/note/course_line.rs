@@ -37,11 +37,12 @@ pub fn words(course: &Course, face: Face) -> Vec<String> {
         .skip(1)
         .map(|point| format!("{:.0} min {}", point.minutes, face.paco2(point.paco2_mmhg)))
         .collect();
-    let settled = if course.settled_minutes > 0.0 {
-        format!("Settled after about {:.0} min. ", course.settled_minutes.ceil())
+    let minutes = course.next_gas_minutes;
+    let next = if course.settled_minutes > 0.0 {
+        let settled = course.settled_minutes.ceil();
+        format!("Settled after about {settled:.0} min. Draw the next gas {minutes:.0} min after the change.")
     } else {
-        "Hardly any change to wait for. ".to_owned()
+        format!("Hardly any change to wait for: a gas tells from {minutes:.0} min on.")
     };
-    let next = format!("{settled}Draw the next gas {:.0} min after the change.", course.next_gas_minutes);
     vec![at.join(face.dot()), next]
 }

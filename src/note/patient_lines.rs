@@ -1,6 +1,6 @@
 //! The lines that say who the patient is, what the gas says, and where the numbers come from.
 
-use super::face::Face;
+use super::face::{Face, TOGETHER};
 use crate::case::entry::{Airway, Sex};
 use crate::case::record::Record;
 use crate::planning::answer::BaselineReport;
@@ -98,6 +98,7 @@ pub fn gas(record: &Record, baseline: &BaselineReport, face: Face) -> Vec<String
             _ => format!("PaCO2 within {band}: ventilation fits the CO2 made."),
         }
     };
+    let parts: Vec<String> = parts.iter().map(|part| part.replace(' ', &TOGETHER.to_string())).collect();
     vec![face.wrapped(&parts.join(face.dot()), "", "  "), face.wrapped(&meaning, "", "  ")]
 }
 
@@ -155,7 +156,7 @@ fn resistance(baseline: &BaselineReport, face: Face) -> String {
     if inspiratory.is_none() && expiratory.is_none() {
         return "Resistance unknown".to_owned();
     }
-    let unit = if face.ascii { "cmH2O-s/L" } else { "cmH2O·s/L" };
+    let unit = if face.ascii { "cmH2O.s/L" } else { "cmH2O·s/L" };
     let inspiratory = with_unit(inspiratory, Dimension::Resistance, unit, face);
     let expiratory = face.known(expiratory, Dimension::Resistance);
     let trapping = match baseline.trapping_evidence {

@@ -10,6 +10,7 @@ use crate::planning::caution::Caution;
 use crate::planning::levers::Lever;
 use crate::planning::plan::{Plan, PlanLine};
 use crate::planning::target::Target;
+use crate::quantity::show::{joined, number};
 use crate::quantity::unit::Dimension;
 
 /// The plan as text.
@@ -169,7 +170,7 @@ fn verdict(line: &PlanLine, plan: &Plan, face: Face) -> String {
 /// "(exactly 26.2)". Past the summit two rates give one PaCO2, and the exact one is the slower of them.
 fn exact(line: &PlanLine, plan: &Plan) -> String {
     let Some(exact) = line.exact else { return String::new() };
-    let shown = format!("{exact:.*}", usize::from(exact < 100.0));
+    let shown = number(exact, usize::from(exact < 100.0));
     let summit = plan.summit.map(|summit| summit.rate_per_min);
     if line.aim == "rate" && summit.is_some_and(|summit| line.settings.rate_per_min > summit) {
         return format!(" (a rate of {shown} reaches it too, with a longer expiration)");
@@ -182,6 +183,12 @@ fn capital(text: &str) -> String {
     letters.next().map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
 }
 
+/// A change with its sign, zeros at the end left out; "0" when it rounds to nothing.
+fn signed(value: f64, digits: usize) -> String {
+    let shown = number(value, digits);
+    if shown.starts_with('-') || shown == "0" { shown } else { format!("+{shown}") }
+}
+
 fn lever(lever: &Lever, face: Face) -> String {
     let name = match lever.id {
         "rate" => "rate",
@@ -190,11 +197,7 @@ fn lever(lever: &Lever, face: Face) -> String {
         "apparatus_dead_space" => "apparatus dead space",
         _ => "CO2 output",
     };
-    let signed = |value: f64, dimension| {
-        let shown = face.value(value, dimension);
-        if shown.starts_with('-') || shown == "0" { shown } else { format!("+{shown}") }
-    };
-    let step = format!("{name} {} {}", signed(lever.step, Dimension::Number), lever.unit);
+    let step = format!("{name} {}", joined(&signed(lever.step, 1), lever.unit));
     let Some(paco2) = lever.paco2_change_mmhg else {
         return format!("  {step:<30} cannot be dialled from here");
     };
@@ -203,13 +206,14 @@ fn lever(lever: &Lever, face: Face) -> String {
     let digits = face.unit.digits() + 1;
     // A change that rounds to nothing is left out.
     let told = |name: &str, change: Option<f64>, digits: usize| {
-        let text = format!("{:+.digits$}", change?);
-        text.contains(|digit: char| matches!(digit, '1'..='9')).then(|| format!("{name} {text}"))
+        let text = signed(change?, digits);
+        (text != "0").then(|| format!("{name} {text}"))
     };
     let buys = [
-        told("PaCO2", Some(tenth), digits)
-            .map_or_else(|| Some("PaCO2 unchanged".to_owned()), Some)
-            .map(|buys| format!("  {step:<30} {buys}")),
+        Some(match signed(tenth, digits).as_str() {
+            "0" => format!("  {step:<30} PaCO2 unchanged"),
+            change => format!("  {step:<30} PaCO2 {change}"),
+        }),
         told("pH", lever.ph_change, 2),
         told("driving", lever.driving_pressure_change_cmh2o, 1),
         told("power", lever.mechanical_power_change_j_min, 1),

@@ -57,7 +57,9 @@ fn course(value: &Value) {
     let points = value["points"].as_array().unwrap();
     let minutes: Vec<f64> = points.iter().map(|point| point["minutes"].as_f64().unwrap()).collect();
     assert_eq!(minutes, [0.0, 5.0, 10.0, 20.0, 30.0, 60.0]);
-    points.iter().for_each(|point| has(point, "minutes paco2_mmhg ph", "course"));
+    for point in points {
+        has(point, "minutes paco2_mmhg ph", "course");
+    }
 }
 
 fn baseline(value: &Value) {
@@ -169,7 +171,9 @@ fn check() {
         .map(|error| (error["line"].as_u64().unwrap(), error["column"].as_u64().unwrap()))
         .collect();
     assert_eq!(places, [(4, 8), (5, 1)]);
-    errors.iter().for_each(|error| has(error, "line column message help", "check"));
+    for error in errors {
+        has(error, "line column message help", "check");
+    }
     let profile = run_with("check - --json", "format = 1\nname = \"ours\"\n[target]\npaco2 = [35, 45]\n");
     let checked: Value = serde_json::from_str(&profile.out).unwrap();
     assert_eq!(checked["files"][0]["kind"], "profile");
