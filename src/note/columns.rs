@@ -84,7 +84,7 @@ fn dialled(columns: &[Column<'_>], face: Face, rows: &mut Vec<String>) {
             rows.push(row(name, cells.into_iter().map(marked)));
         }
     };
-    line("set rate, 1/min", |settings| Some(settings.rate_per_min), Dimension::Rate, Row::Always);
+    line("set rate, breaths/min", |settings| Some(settings.rate_per_min), Dimension::Rate, Row::Always);
     line("set tidal volume, mL", |settings| settings.tidal_volume_ml, Dimension::Volume, Row::Always);
     line(
         "inspiratory pressure, cmH2O",

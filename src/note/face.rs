@@ -126,9 +126,12 @@ mod tests {
     }
 
     #[test]
-    fn a_range_names_what_is_unknown() {
+    fn a_range_has_no_upper_end_that_no_patient_reaches() {
         let face = Face::default();
         assert_eq!(face.gas_range(Some(38.2), Some(66.9)), "38–67");
         assert_eq!(face.gas_range(Some(38.2), None), "over 38");
+        assert_eq!(face.gas_range(Some(90.0), Some(4865.0)), "over 90");
+        assert_eq!(face.gas_range(Some(254.0), Some(874.0)), "over 200");
+        assert_eq!(face.gas_range(None, Some(50.0)), "unknown");
     }
 }

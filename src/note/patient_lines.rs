@@ -178,7 +178,7 @@ fn resistance(baseline: &BaselineReport, face: Face) -> String {
     if inspiratory.is_none() && expiratory.is_none() {
         return "Resistance unknown".to_owned();
     }
-    let unit = if face.ascii { "cmH2O-s/L" } else { "cmH2O·s/L" };
+    let unit = if face.ascii { "cmH2O.s/L" } else { "cmH2O·s/L" };
     let inspiratory = with_unit(inspiratory, Dimension::Resistance, unit, face);
     let expiratory = face.known(expiratory, Dimension::Resistance);
     let trapping = match baseline.trapping_evidence {

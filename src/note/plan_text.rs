@@ -9,7 +9,6 @@ use crate::planning::baseline::mechanics::TrappingEvidence;
 use crate::planning::caution::Caution;
 use crate::planning::levers::Lever;
 use crate::planning::plan::{Plan, PlanLine};
-use crate::planning::reckoning::reckon;
 use crate::planning::target::Target;
 use crate::quantity::show::{joined, number};
 use crate::quantity::unit::Dimension;
@@ -177,7 +176,7 @@ fn verdict(line: &PlanLine, plan: &Plan, face: Face) -> String {
 /// "(exactly 26.2)". Past the summit two rates give one PaCO2, and the exact one is the slower of them.
 fn exact(line: &PlanLine, plan: &Plan) -> String {
     let Some(exact) = line.exact else { return String::new() };
-    let shown = format!("{exact:.*}", usize::from(exact < 100.0));
+    let shown = number(exact, usize::from(exact < 100.0));
     let summit = plan.summit.map(|summit| summit.rate_per_min);
     if line.aim == "rate" && summit.is_some_and(|summit| line.settings.rate_per_min > summit) {
         return format!(" (a rate of {shown} reaches it too, with a longer expiration)");
