@@ -9,6 +9,7 @@ use crate::planning::baseline::mechanics::TrappingEvidence;
 use crate::planning::caution::Caution;
 use crate::planning::levers::Lever;
 use crate::planning::plan::{Plan, PlanLine};
+use crate::planning::reckoning::reckon;
 use crate::planning::target::Target;
 use crate::quantity::show::{joined, number};
 use crate::quantity::unit::Dimension;
