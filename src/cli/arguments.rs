@@ -60,9 +60,7 @@ fn heading(table: &str) -> &'static str {
     match table {
         "patient" => "The patient (in place of CASE)",
         "settings" => "Settings (with CASE: what to try; without: what is set now)",
-        "measured" => {
-            "Measurements (in place of CASE; CO2 output, compliance, resistance also as what-if with CASE)"
-        }
+        "measured" => "Measurements (with CASE: CO2 output, compliance, resistance as what-if)",
         _ => "The arterial gas (in place of CASE)",
     }
 }
