@@ -7,6 +7,7 @@ mod chart;
 pub mod checked;
 mod clock;
 pub mod complaint;
+mod note;
 mod review;
 mod source;
 mod trial;
@@ -98,6 +99,7 @@ fn dispatch(matches: &ArgMatches) -> Said {
         Some(("plan", matches)) => answer::plan(matches, colour),
         Some(("forecast", matches)) => answer::forecast(matches, colour),
         Some(("chart", matches)) => chart::chart(matches, colour),
+        Some(("note", matches)) => note::note(matches, colour),
         Some(("review", matches)) => review::review(matches, colour),
         Some(("check", matches)) => answer::check(matches, colour),
         Some(("profiles", matches)) => answer::profiles(matches, colour),

@@ -203,6 +203,7 @@ pub fn command() -> Command {
         .subcommand(plan_command())
         .subcommand(forecast_command())
         .subcommand(super::chart::arguments::command())
+        .subcommand(super::note::command())
         .subcommand(review_command())
         .subcommand(
             Command::new("check")

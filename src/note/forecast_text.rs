@@ -13,7 +13,7 @@ use crate::quantity::unit::Dimension;
 /// The forecast as text.
 pub fn of(forecast: &Forecast, record: &Record, face: Face) -> String {
     let mut lines = vec![patient_lines::patient(record, forecast.baseline.predicted_weight_kg, face)];
-    lines.extend(patient_lines::gas(record, &forecast.baseline, face));
+    lines.extend(patient_lines::gas(record, face));
     lines.push(String::new());
     let trapping_assumed = forecast.baseline.trapping_evidence == TrappingEvidence::Assumed;
     let output_estimated = forecast.baseline.co2_evidence == Co2Evidence::Estimated;

@@ -1,8 +1,10 @@
 //! The lines that say who the patient is, what the gas says, and where the numbers come from.
 
+use super::document::{harmless, no_formula};
 use super::face::{Face, TOGETHER};
 use crate::case::entry::{Airway, Sex};
-use crate::case::record::Record;
+use crate::case::record::{Occasion, Record};
+use crate::physiology::acid_base;
 use crate::planning::answer::BaselineReport;
 use crate::planning::baseline::gas_exchange::Co2Evidence;
 use crate::planning::baseline::mechanics::TrappingEvidence;
@@ -20,8 +22,14 @@ const NORMAL_PH: [f64; 2] = [7.35, 7.45];
 pub fn patient(record: &Record, predicted_weight_kg: Option<f64>, face: Face) -> String {
     let mut parts = Vec::new();
     if !record.label().is_empty() {
-        parts.push(record.label().to_owned());
+        parts.push(no_formula(record.label()));
     }
+    parts.push(body(record, predicted_weight_kg, face));
+    face.wrapped(&parts.join(face.dot()), "", "  ")
+}
+
+/// The same without the label: "female 158 cm, 50.6 kg predicted, tube · lung-protective"
+pub fn body(record: &Record, predicted_weight_kg: Option<f64>, face: Face) -> String {
     let patient = record.patient();
     let mut body = Vec::new();
     let sex = patient.sex.map(|sex| match sex {
@@ -46,19 +54,29 @@ pub fn patient(record: &Record, predicted_weight_kg: Option<f64>, face: Face) ->
         }
         .to_owned(),
     );
-    parts.push(body.join(", "));
-    parts.push(record.profile().name.clone());
-    face.wrapped(&parts.join(face.dot()), "", "  ")
+    [body.join(", "), harmless(&record.profile().name)].join(face.dot())
 }
 
 /// The latest gas in one line, and what its PaCO2 means.
-pub fn gas(record: &Record, baseline: &BaselineReport, face: Face) -> Vec<String> {
+pub fn gas(record: &Record, face: Face) -> Vec<String> {
     let latest = record
         .occasions()
         .iter()
         .filter(|occasion| occasion.entry.gas.paco2_mmhg.is_some())
         .max_by_key(|occasion| occasion.drawn_at());
     let Some(occasion) = latest else { return Vec::new() };
+    let gas = &occasion.entry.gas;
+    let meaning = meaning(gas.ph, gas.paco2_mmhg.unwrap_or_default(), face);
+    // A value stays with its unit and name when the line wraps.
+    let parts: Vec<String> = gas_line(occasion, face)
+        .split(face.dot())
+        .map(|part| part.replace(' ', &TOGETHER.to_string()))
+        .collect();
+    vec![face.wrapped(&parts.join(face.dot()), "", "  "), face.wrapped(&meaning, "", "  ")]
+}
+
+/// A gas in one line: "gas 2026-03-09 08:10 · pH 7.23 · PaCO2 60 mmHg · HCO3 24.3 mmol/L · PaO2/FiO2 100 mmHg"
+pub fn gas_line(occasion: &Occasion, face: Face) -> String {
     let gas = &occasion.entry.gas;
     let mut parts = Vec::new();
     let drawn = occasion.drawn_at().map(|at| format!("gas {at}"));
@@ -68,14 +86,20 @@ pub fn gas(record: &Record, baseline: &BaselineReport, face: Face) -> Vec<String
     );
     let paco2 = gas.paco2_mmhg.unwrap_or_default();
     parts.push(format!("PaCO2 {}", face.gas(paco2)));
-    if let Some(bicarbonate) = baseline.bicarbonate_mmol_l {
+    let bicarbonate = gas.ph.map(|ph| acid_base::bicarbonate(ph, paco2)).or(gas.bicarbonate_mmol_l);
+    if let Some(bicarbonate) = bicarbonate {
         parts.push(format!("HCO3 {} mmol/L", face.value(bicarbonate, Dimension::Concentration)));
     }
-    if let Some(ratio) = baseline.pao2_fio2_mmhg {
-        parts.push(format!("PaO2/FiO2 {}", face.gas(ratio)));
+    if let Some((pao2, fio2)) = gas.pao2_mmhg.zip(occasion.in_force.fio2()) {
+        parts.push(format!("PaO2/FiO2 {}", face.gas(pao2 / fio2)));
     }
+    parts.join(face.dot())
+}
+
+/// What a PaCO2 and its pH mean, by PaCO2 and never by how fast the patient breathes.
+pub fn meaning(ph: Option<f64>, paco2: f64, face: Face) -> String {
     let bound = |mmhg: f64| face.gas(mmhg);
-    let meaning = if paco2 > HYPOVENTILATION_ABOVE_MMHG {
+    if paco2 > HYPOVENTILATION_ABOVE_MMHG {
         format!(
             "Hypoventilation for the CO2 made: PaCO2 above {}, however fast the breathing.",
             bound(HYPOVENTILATION_ABOVE_MMHG)
@@ -90,16 +114,14 @@ pub fn gas(record: &Record, baseline: &BaselineReport, face: Face) -> Vec<String
             bound(HYPOVENTILATION_ABOVE_MMHG)
         );
         let [low, high] = NORMAL_PH;
-        match gas.ph {
+        match ph {
             Some(ph) if !(low..=high).contains(&ph) => format!(
                 "PaCO2 within {band}, yet pH {}: the bicarbonate explains it, acute or as this patient's habit.",
                 face.value(ph, Dimension::Ph)
             ),
             _ => format!("PaCO2 within {band}: ventilation fits the CO2 made."),
         }
-    };
-    let parts: Vec<String> = parts.iter().map(|part| part.replace(' ', &TOGETHER.to_string())).collect();
-    vec![face.wrapped(&parts.join(face.dot()), "", "  "), face.wrapped(&meaning, "", "  ")]
+    }
 }
 
 /// Where the numbers come from, one line each.

@@ -2,13 +2,14 @@
 
 use super::columns::{Column, Moved, table};
 use super::face::{Face, ascii};
-use super::{SAFETY, course_line, patient_lines};
+use super::{SAFETY, course_line, patient_lines, reckoning_lines};
 use crate::case::record::Record;
 use crate::planning::baseline::gas_exchange::Co2Evidence;
 use crate::planning::baseline::mechanics::TrappingEvidence;
 use crate::planning::caution::Caution;
 use crate::planning::levers::Lever;
 use crate::planning::plan::{Plan, PlanLine};
+use crate::planning::reckoning::reckon;
 use crate::quantity::show::{joined, number};
 use crate::quantity::unit::Dimension;
 
@@ -16,10 +17,16 @@ use crate::quantity::unit::Dimension;
 pub fn of(plan: &Plan, record: &Record, face: Face) -> String {
     let mut lines = Vec::new();
     lines.push(patient_lines::patient(record, plan.baseline.predicted_weight_kg, face));
-    lines.extend(patient_lines::gas(record, &plan.baseline, face));
+    lines.extend(patient_lines::gas(record, face));
     lines.push(goal(plan, record, face));
     if plan.now.paco2_is == "forecast" {
         lines.push("Settings changed since the latest gas: PaCO2 now is forecast, not measured.".to_owned());
+    }
+    let last = reckoning_lines::last(&reckon(record), face);
+    if !last.is_empty() {
+        lines.push(String::new());
+        lines.push("Last forecast".to_owned());
+        lines.extend(last.iter().map(|line| face.wrapped(line, "  ", "    ")));
     }
     lines.push(String::new());
     lines.extend(table(&columns(plan), face));
