@@ -73,7 +73,10 @@ pub fn run() -> ExitCode {
         Err(error) => {
             // Help and version are answers; everything else is usage.
             let status = if error.use_stderr() { Status::BadInput } else { Status::Done };
-            return if error.print().is_ok() { status.into() } else { Status::Unreadable.into() };
+            return match error.print() {
+                Err(unwritten) if unwritten.kind() != io::ErrorKind::BrokenPipe => Status::Unreadable.into(),
+                _ => status.into(),
+            };
         }
     };
     print(&dispatch(&matches))

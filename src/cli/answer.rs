@@ -25,6 +25,9 @@ use crate::quantity::show::PressureUnit;
 /// The case shown when none is named.
 pub const DEMONSTRATION: &str = "injured-lungs";
 
+/// Columns for the names of a list.
+const NAMES: usize = 26;
+
 /// What a command says, or why it cannot.
 pub type Answer = Result<Said, Said>;
 
@@ -221,8 +224,15 @@ pub fn profiles(matches: &ArgMatches, _: Colours) -> Answer {
 /// `tidewright cases`.
 pub fn cases(matches: &ArgMatches, _: Colours) -> Answer {
     let summary = |preset: &Preset| {
-        let first = preset.text.lines().next().unwrap_or("");
-        first.trim_start_matches('#').trim().to_owned()
+        // The words above the case, to the end of the first line that ends a sentence.
+        let mut words = Vec::new();
+        for line in preset.text.lines().map_while(|line| line.strip_prefix('#')) {
+            words.push(line.trim());
+            if line.ends_with('.') {
+                break;
+            }
+        }
+        words.join(" ")
     };
     listed(matches, "case", &CASES, &summary)
 }
@@ -251,7 +261,11 @@ fn listed(
             .collect();
         return Ok(Said::answer(as_json(&objects)?, Status::Done));
     }
-    let lines: Vec<String> = list.iter().map(|(name, summary)| format!("{name:<26}{summary}\n")).collect();
+    let (face, later) = (face(matches), " ".repeat(NAMES));
+    let lines: Vec<String> = list
+        .iter()
+        .map(|(name, summary)| format!("{}\n", face.wrapped(summary, &format!("{name:<NAMES$}"), &later)))
+        .collect();
     Ok(Said::answer(lines.concat(), Status::Done))
 }
 
