@@ -5,6 +5,7 @@ use crate::case::profile::LimitId;
 use crate::planning::answer::SettingsReport;
 use crate::planning::limits::{LimitVerdict, Verdict, rests_on_trapping};
 use crate::planning::outcome::Outcome;
+use crate::quantity::show::number;
 use crate::quantity::unit::Dimension;
 
 /// Width of the row names.
@@ -51,13 +52,18 @@ pub fn row(name: &str, cells: impl Iterator<Item = String>) -> String {
     line.trim_end().to_owned()
 }
 
-fn marked(text: String, moved: bool) -> String {
-    if moved { format!("*{text}") } else { text }
+/// A dialled value, with a star where it is to be changed from `now`.
+fn marked(value: f64, now: Option<f64>, moved: bool, dimension: Dimension, face: Face) -> String {
+    let text = face.value(value, dimension);
+    let changed = now.is_none_or(|now| (value - now).abs() > 1e-9);
+    if moved && changed { format!("*{text}") } else { text }
 }
 
 /// The rows of the table, heads first.
 pub fn table(columns: &[Column<'_>], face: Face) -> Vec<String> {
-    let mut rows = vec![row("", columns.iter().map(|column| column.title.clone()))];
+    let legend =
+        if columns.iter().any(|column| column.moved != Moved::Nothing) { "* to be changed" } else { "" };
+    let mut rows = vec![row(legend, columns.iter().map(|column| column.title.clone()))];
     dialled(columns, face, &mut rows);
     gas(columns, face, &mut rows);
     breath(columns, face, &mut rows);
@@ -66,19 +72,22 @@ pub fn table(columns: &[Column<'_>], face: Face) -> Vec<String> {
 }
 
 fn dialled(columns: &[Column<'_>], face: Face, rows: &mut Vec<String>) {
+    let now = columns.first().map(|column| column.settings);
     rows.push(row(
-        "set rate, 1/min",
+        "set rate, breaths/min",
         columns.iter().map(|column| {
             let moved = matches!(column.moved, Moved::Rate | Moved::Both);
-            marked(face.value(column.settings.rate_per_min, Dimension::Rate), moved)
+            let before = now.map(|settings| settings.rate_per_min);
+            marked(column.settings.rate_per_min, before, moved, Dimension::Rate, face)
         }),
     ));
     let mut volume = |name: &str, value: fn(&SettingsReport) -> Option<f64>, dimension| {
         if columns.iter().any(|column| value(column.settings).is_some()) {
             let cells = columns.iter().map(|column| {
                 let moved = matches!(column.moved, Moved::Volume | Moved::Both);
+                let before = now.and_then(value);
                 value(column.settings)
-                    .map_or_else(String::new, |value| marked(face.value(value, dimension), moved))
+                    .map_or_else(String::new, |value| marked(value, before, moved, dimension, face))
             });
             rows.push(row(name, cells));
         }
@@ -171,14 +180,14 @@ pub const fn dimension(id: LimitId) -> Dimension {
     }
 }
 
-/// The bounds of a limit in words: "≤30 cmH2O", "4–8 mL/kg".
+/// The bounds of a limit in words: "≤30 cmH2O", "4–8 mL/kg", "≤35/min".
 pub fn bounds(limit: &LimitVerdict, face: Face) -> String {
     let shown = |value: f64| face.value(value, dimension(limit.id));
     let unit = match (limit.id, face.unit.word()) {
         (LimitId::Paco2, word) => format!(" {word}"),
         (LimitId::Paco2FallPerHour, word) => format!(" {word}/h"),
         _ if limit.unit == "1" => String::new(),
-        // "≤35/min", as people write it.
+        // "35 1/min" could be read as 351.
         _ if limit.unit.starts_with("1/") => limit.unit.trim_start_matches('1').to_owned(),
         _ => format!(" {}", limit.unit),
     };
@@ -199,7 +208,18 @@ pub fn cell(limit: &LimitVerdict, trapping_assumed: bool, face: Face) -> String 
         _ => "",
     };
     debug_assert!(mark.is_empty() || rests_on_trapping(limit.id));
-    let shown = face.value(value, dimension(limit.id));
+    let mut shown = face.value(value, dimension(limit.id));
+    // "8 beyond" would stand oddly beside a bound of 8: a digit more tells them apart.
+    let bounds = [limit.min, limit.max].into_iter().flatten();
+    let bounds: Vec<String> = bounds.map(|bound| face.value(bound, dimension(limit.id))).collect();
+    if limit.verdict == Verdict::Beyond && bounds.contains(&shown) {
+        let in_unit = match dimension(limit.id) {
+            Dimension::GasPressure | Dimension::PressurePerHour => face.unit.from_mmhg(value),
+            _ => value,
+        };
+        let finer = (1..4).map(|digits| number(in_unit, digits)).find(|text| !bounds.contains(text));
+        shown = finer.unwrap_or(shown);
+    }
     format!("{mark}{shown} {}", limit.verdict.word())
 }
 

@@ -40,11 +40,12 @@ pub fn words(course: &Course, face: Face) -> Vec<String> {
             format!("{:.0} min {}", point.minutes, face.value(point.paco2_mmhg, Dimension::GasPressure))
         })
         .collect();
-    let settled = if course.settled_minutes > 0.0 {
-        format!("Settled after about {:.0} min. ", course.settled_minutes.ceil())
+    let minutes = course.next_gas_minutes;
+    let next = if course.settled_minutes > 0.0 {
+        let settled = course.settled_minutes.ceil();
+        format!("Settled after about {settled:.0} min. Draw the next gas {minutes:.0} min after the change.")
     } else {
-        "Nothing to settle. ".to_owned()
+        format!("Nothing to settle: a gas tells from {minutes:.0} min on.")
     };
-    let next = format!("{settled}Draw the next gas {:.0} min after the change.", course.next_gas_minutes);
     vec![at.join(face.dot()), next]
 }

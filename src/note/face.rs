@@ -3,6 +3,9 @@
 use crate::quantity::show::{PressureUnit, show};
 use crate::quantity::unit::Dimension;
 
+/// A space at which no line is broken.
+pub const TOGETHER: char = '\u{A0}';
+
 /// The width texts keep to.
 pub const WIDTH: usize = 80;
 
@@ -44,7 +47,8 @@ impl Face {
 
     /// Between the parts of a line.
     pub const fn dot(self) -> &'static str {
-        if self.ascii { " - " } else { " · " }
+        // A hyphen between numbers would read as a minus or a range.
+        if self.ascii { " | " } else { " · " }
     }
 
     /// Before a value that may be larger.
@@ -60,8 +64,13 @@ impl Face {
     /// Text wrapped to the width, with a first and a later indent.
     pub fn wrapped(self, text: &str, first: &str, later: &str) -> String {
         let text = if self.ascii { ascii(text) } else { text.to_owned() };
-        let options = textwrap::Options::new(WIDTH).initial_indent(first).subsequent_indent(later);
-        textwrap::fill(&text, options)
+        // Lines break at spaces alone: never within a range ("34-53") or at a space that keeps a number and its unit together.
+        let options = textwrap::Options::new(WIDTH)
+            .initial_indent(first)
+            .subsequent_indent(later)
+            .word_separator(textwrap::WordSeparator::AsciiSpace)
+            .word_splitter(textwrap::WordSplitter::NoHyphenation);
+        textwrap::fill(&text, options).replace(TOGETHER, " ")
     }
 }
 
@@ -70,7 +79,10 @@ pub fn ascii(text: &str) -> String {
     let mut plain = String::with_capacity(text.len());
     for letter in text.chars() {
         match letter {
-            '·' | '–' | '—' | '−' => plain.push('-'),
+            '–' | '—' | '−' => plain.push('-'),
+            // UCUM's sign of multiplication.
+            '·' => plain.push('.'),
+            TOGETHER => plain.push(TOGETHER),
             '≥' => plain.push_str(">="),
             '≤' => plain.push_str("<="),
             '→' => plain.push_str("->"),
@@ -92,7 +104,7 @@ mod tests {
 
     #[test]
     fn ascii_is_ascii() {
-        assert_eq!(ascii("cmH2O·s/L ≥ 3 – 4 °C"), "cmH2O-s/L >= 3 - 4 deg C");
+        assert_eq!(ascii("cmH2O·s/L ≥ 3 – 4 °C"), "cmH2O.s/L >= 3 - 4 deg C");
         assert!(ascii("Bett fünf ☃").is_ascii());
     }
 

@@ -1,7 +1,7 @@
 //! The lines that say who the patient is, what the gas says, and where the numbers come from.
 
 use super::document::{harmless, no_formula};
-use super::face::Face;
+use super::face::{Face, TOGETHER};
 use crate::case::entry::{Airway, Sex};
 use crate::case::record::{Occasion, Record};
 use crate::physiology::acid_base;
@@ -67,7 +67,12 @@ pub fn gas(record: &Record, face: Face) -> Vec<String> {
     let Some(occasion) = latest else { return Vec::new() };
     let gas = &occasion.entry.gas;
     let meaning = meaning(gas.ph, gas.paco2_mmhg.unwrap_or_default(), face);
-    vec![face.wrapped(&gas_line(occasion, face), "", "  "), face.wrapped(&meaning, "", "  ")]
+    // A value stays with its unit and name when the line wraps.
+    let parts: Vec<String> = gas_line(occasion, face)
+        .split(face.dot())
+        .map(|part| part.replace(' ', &TOGETHER.to_string()))
+        .collect();
+    vec![face.wrapped(&parts.join(face.dot()), "", "  "), face.wrapped(&meaning, "", "  ")]
 }
 
 /// A gas in one line: "gas 2026-03-09 08:10 · pH 7.23 · PaCO2 60 mmHg · HCO3 24.3 mmol/L · PaO2/FiO2 100 mmHg"
@@ -153,7 +158,7 @@ pub fn origins(baseline: &BaselineReport, face: Face) -> Vec<String> {
     lines.push(format!("Respiratory-system compliance {compliance} mL/cmH2O"));
     lines.push(format!(
         "Resistance {inspiratory} cmH2O{}s/L in, {expiratory} out{trapping}",
-        if face.ascii { "-" } else { "·" }
+        if face.ascii { "." } else { "·" }
     ));
     if let Some(ratio) = baseline.ventilatory_ratio {
         lines.push(format!("Ventilatory ratio {} (about 1 in health)", face.value(ratio, Dimension::Number)));

@@ -10,6 +10,7 @@ use crate::planning::caution::Caution;
 use crate::planning::levers::Lever;
 use crate::planning::plan::{Plan, PlanLine};
 use crate::planning::reckoning::reckon;
+use crate::quantity::show::{joined, number};
 use crate::quantity::unit::Dimension;
 
 /// The plan as text.
@@ -144,12 +145,15 @@ fn verdict(line: &PlanLine, face: Face) -> String {
             format!("none known to be beyond, but unknown: {}", names.join(", "))
         }
     };
-    let goal =
-        if line.on_target { "on the goal" } else { "NOT on the goal, the nearest that can be dialled" };
-    let exact = line.exact.map_or_else(String::new, |exact| {
-        let digits = usize::from(exact < 100.0);
-        format!(" (exactly {exact:.digits$})")
-    });
+    // "On the goal" alone would read as a promise.
+    let chance = line.forecast.interval.chance_on_target;
+    let chance = chance.map_or_else(String::new, |chance| format!(" (chance {:.0} %)", chance * 100.0));
+    let goal = if line.on_target {
+        format!("forecast on the goal{chance}")
+    } else {
+        "NOT on the goal, the nearest that can be dialled".to_owned()
+    };
+    let exact = line.exact.map_or_else(String::new, |exact| exactly(line, exact));
     let blocked = if line.blocked_by.is_empty() {
         String::new()
     } else {
@@ -159,9 +163,25 @@ fn verdict(line: &PlanLine, face: Face) -> String {
     face.wrapped(&format!("{}{exact}: {goal}; {limits}.{blocked}", capital(name_of(line.aim))), "", "  ")
 }
 
+/// The unrounded answer beside what is dialled. Past the summit in pressure control the same PaCO2 has two rates, and the
+/// nearest settable one may be the faster.
+fn exactly(line: &PlanLine, exact: f64) -> String {
+    let shown = number(exact, usize::from(exact < 100.0));
+    if line.aim == "rate" && (exact - line.settings.rate_per_min).abs() > 1.0 {
+        return format!(" (the same PaCO2 at {shown}/min)");
+    }
+    format!(" (exactly {shown})")
+}
+
 fn capital(text: &str) -> String {
     let mut letters = text.chars();
     letters.next().map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
+}
+
+/// A change with its sign, zeros at the end left out; "0" when it rounds to nothing.
+fn signed(value: f64, digits: usize) -> String {
+    let shown = number(value, digits);
+    if shown.starts_with('-') || shown == "0" { shown } else { format!("+{shown}") }
 }
 
 fn lever(lever: &Lever, face: Face) -> String {
@@ -172,11 +192,7 @@ fn lever(lever: &Lever, face: Face) -> String {
         "apparatus_dead_space" => "apparatus dead space",
         _ => "CO2 output",
     };
-    let signed = |value: f64, dimension| {
-        let shown = face.value(value, dimension);
-        if shown.starts_with('-') || shown == "0" { shown } else { format!("+{shown}") }
-    };
-    let step = format!("{name} {} {}", signed(lever.step, Dimension::Number), lever.unit);
+    let step = format!("{name} {}", joined(&signed(lever.step, 1), lever.unit));
     let Some(paco2) = lever.paco2_change_mmhg else {
         return format!("  {step:<30} cannot be dialled from here");
     };
@@ -185,11 +201,14 @@ fn lever(lever: &Lever, face: Face) -> String {
     let digits = face.unit.digits() + 1;
     // A change that rounds to nothing is left out.
     let told = |name: &str, change: Option<f64>, digits: usize| {
-        let text = format!("{:+.digits$}", change?);
-        text.contains(|digit: char| matches!(digit, '1'..='9')).then(|| format!("{name} {text}"))
+        let text = signed(change?, digits);
+        (text != "0").then(|| format!("{name} {text}"))
     };
     let buys = [
-        Some(format!("  {step:<30} PaCO2 {tenth:+.digits$}")),
+        Some(match signed(tenth, digits).as_str() {
+            "0" => format!("  {step:<30} PaCO2 unchanged"),
+            change => format!("  {step:<30} PaCO2 {change}"),
+        }),
         told("pH", lever.ph_change, 2),
         told("driving", lever.driving_pressure_change_cmh2o, 1),
         told("power", lever.mechanical_power_change_j_min, 1),

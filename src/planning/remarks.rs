@@ -95,7 +95,7 @@ fn of_breathing(forecaster: &Forecaster<'_>, cautions: &mut Cautions) {
     if !(low..=high).contains(&per_set) {
         let (expected, look) = match baseline.now.control() {
             Control::Pressure => {
-                ("of what compliance and resistance would give", "those values and for a leak")
+                ("of what compliance and resistance would give", "at those values again, and for a leak")
             }
             Control::Volume | Control::Support => ("of the set volume", "for a leak and the flow sensor"),
         };
@@ -275,18 +275,19 @@ pub fn of_readings(what: &str, readings: &HeldReadings, cautions: &mut Cautions)
     let (Some(split), Some(fraction)) = (readings.split, readings.fraction) else { return };
     let apart = readings.volume.is_none() || readings.spread_mmhg() > READINGS_APART_MMHG;
     if apart {
-        let volume = readings.volume.map_or("no breath past it".to_owned(), |mmhg| format!("{mmhg:.0}"));
-        let id = match what {
-            "rate" => "dead_space_readings_rate",
-            "volume" => "dead_space_readings_volume",
-            "gentle" => "dead_space_readings_gentle",
-            _ => "dead_space_readings",
+        let volume = readings.volume.map_or("no breath past it".to_owned(), |mmhg| format!("{mmhg:.0} mmHg"));
+        let (id, plan) = match what {
+            "rate" => ("dead_space_readings_rate", "the plan by rate"),
+            "volume" => ("dead_space_readings_volume", "the plan by volume"),
+            "gentle" => ("dead_space_readings_gentle", "the gentlest plan"),
+            _ => ("dead_space_readings", "these settings"),
         };
         cautions.say(
             id,
             format!(
-                "For {what} the forecast hangs on how dead space behaves: {split:.0} mmHg as split, {volume} if all of it \
-                 stays a volume, {fraction:.0} if all of it stays a fraction. Change in smaller steps and repeat the gas."
+                "For {plan} the forecast hangs on how dead space behaves: {split:.0} mmHg if the airway stays a volume and \
+                 the rest a fraction, {volume} if all of it stays a volume, {fraction:.0} mmHg if all of it stays a \
+                 fraction. Change in smaller steps and repeat the gas."
             ),
         );
     }
