@@ -243,8 +243,19 @@ fn slips_typed_as_flags_are_asked_about_and_never_repaired() {
     }
 }
 
-const COMMANDS: [&str; 10] =
-    ["", "plan", "forecast", "chart", "review", "check", "profiles", "cases", "completions", "manual"];
+const COMMANDS: [&str; 11] = [
+    "",
+    "plan",
+    "forecast",
+    "chart",
+    "note",
+    "review",
+    "check",
+    "profiles",
+    "cases",
+    "completions",
+    "manual",
+];
 
 #[test]
 fn help_of_every_command() {
