@@ -1,6 +1,7 @@
-//! The patient's record: what a person charts, read from TOML or flags, checked once, and the profile of limits.
+//! The patient's record: what a person charts, read from TOML or flags, added to a file, checked once, and the profile of limits.
 
 mod amend;
+pub mod append;
 mod contradiction;
 pub mod entry;
 pub mod fault;
@@ -15,3 +16,4 @@ pub mod read;
 pub mod record;
 pub mod settings;
 pub mod slots;
+pub mod write;

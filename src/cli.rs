@@ -76,7 +76,8 @@ pub fn run() -> ExitCode {
 }
 
 fn print(said: &Said) -> ExitCode {
-    let written = io::stdout().lock().write_all(said.out.as_bytes()).and_then(|()| io::stdout().lock().flush());
+    let written =
+        io::stdout().lock().write_all(said.out.as_bytes()).and_then(|()| io::stdout().lock().flush());
     let complained = io::stderr().lock().write_all(said.err.as_bytes());
     match written.and(complained) {
         Ok(()) => said.status.into(),

@@ -14,6 +14,7 @@ pub mod limits;
 pub mod outcome;
 pub mod plan;
 pub mod remarks;
+pub mod score;
 pub mod solve;
 pub mod target;
 pub mod trial;

@@ -36,7 +36,9 @@ fn face(matches: &ArgMatches) -> Face {
 }
 
 fn as_json(answer: &impl serde::Serialize) -> Result<String, Said> {
-    json::of(answer).map_err(|error| sentence(&format!("the answer cannot be written as JSON: {error}"), Status::Unreadable))
+    json::of(answer).map_err(|error| {
+        sentence(&format!("the answer cannot be written as JSON: {error}"), Status::Unreadable)
+    })
 }
 
 fn held(matches: &ArgMatches) -> Held {
@@ -63,9 +65,8 @@ fn trial_of(matches: &ArgMatches, colours: Colours) -> Result<Trial, Said> {
 }
 
 fn asked(matches: &ArgMatches, colours: Colours) -> Result<Asked, Said> {
-    let complain = |problem: Problem| {
-        Said::complaint(complaint::draw(&[problem], None, colours.err), Status::BadInput)
-    };
+    let complain =
+        |problem: Problem| Said::complaint(complaint::draw(&[problem], None, colours.err), Status::BadInput);
     if let Some(text) = matches.get_one::<String>("to_paco2") {
         return trial::quantity(text, Key::PlannedPaco2)
             .map(Asked::Paco2)
@@ -213,7 +214,12 @@ pub fn cases(matches: &ArgMatches, _: Colours) -> Answer {
     listed(matches, "case", &CASES, &summary)
 }
 
-fn listed(matches: &ArgMatches, what: &str, presets: &[Preset], summary: &dyn Fn(&Preset) -> String) -> Answer {
+fn listed(
+    matches: &ArgMatches,
+    what: &str,
+    presets: &[Preset],
+    summary: &dyn Fn(&Preset) -> String,
+) -> Answer {
     if let Some(name) = matches.get_one::<String>("show") {
         let found = presets.iter().find(|preset| preset.name == name);
         return found.map(|preset| Said::answer(preset.text.to_owned(), Status::Done)).ok_or_else(|| {
@@ -226,8 +232,10 @@ fn listed(matches: &ArgMatches, what: &str, presets: &[Preset], summary: &dyn Fn
     }
     let list: Vec<(&str, String)> = presets.iter().map(|preset| (preset.name, summary(preset))).collect();
     if matches.get_flag("json") {
-        let objects: Vec<_> =
-            list.iter().map(|(name, summary)| serde_json::json!({ "name": name, "summary": summary })).collect();
+        let objects: Vec<_> = list
+            .iter()
+            .map(|(name, summary)| serde_json::json!({ "name": name, "summary": summary }))
+            .collect();
         return Ok(Said::answer(as_json(&objects)?, Status::Done));
     }
     let lines: Vec<String> = list.iter().map(|(name, summary)| format!("{name:<26}{summary}\n")).collect();

@@ -41,8 +41,18 @@ pub fn bedside_inputs() -> impl Iterator<Item = &'static Input> {
 /// Words that are bedside flags: key, table, choices, help.
 pub const WORDS: [(&str, &str, &[&str], &str); 4] = [
     ("sex", "patient", &["female", "male"], "Sex, for predicted weight"),
-    ("airway", "patient", &["native", "tube", "tracheostomy"], "The airway the breath passes [assumed: tube]"),
-    ("control", "settings", &["volume", "pressure", "support"], "Volume control, pressure control or support"),
+    (
+        "airway",
+        "patient",
+        &["native", "tube", "tracheostomy"],
+        "The airway the breath passes [assumed: tube]",
+    ),
+    (
+        "control",
+        "settings",
+        &["volume", "pressure", "support"],
+        "Volume control, pressure control or support",
+    ),
     ("flow_pattern", "settings", &["constant", "decelerating"], "Flow pattern in volume control"),
 ];
 
@@ -64,7 +74,12 @@ fn quantity(input: &'static Input) -> Arg {
         .value_name(if unit.is_empty() { "VALUE".to_owned() } else { unit.to_owned() })
         .allow_hyphen_values(true)
         .help_heading(heading(input.table))
-        .help(format!("{}{} ({range}; e.g. {})", words.get(..1).unwrap_or("").to_uppercase(), words.get(1..).unwrap_or(""), input.example))
+        .help(format!(
+            "{}{} ({range}; e.g. {})",
+            words.get(..1).unwrap_or("").to_uppercase(),
+            words.get(1..).unwrap_or(""),
+            input.example
+        ))
 }
 
 fn tried(key: &'static str) -> Arg {
@@ -82,13 +97,15 @@ fn choice(name: &'static str, values: &'static [&'static str], help: &'static st
 }
 
 fn case_argument() -> Arg {
-    Arg::new("case").value_name("CASE").help("A case file, the name of a built-in case, or - for standard input")
+    Arg::new("case")
+        .value_name("CASE")
+        .help("A case file, the name of a built-in case, or - for standard input")
 }
 
 fn bedside(command: Command) -> Command {
-    let words = WORDS.iter().map(|(key, table, choices, help)| {
-        choice(key, choices, help).help_heading(heading(table))
-    });
+    let words = WORDS
+        .iter()
+        .map(|(key, table, choices, help)| choice(key, choices, help).help_heading(heading(table)));
     let tries = TRIAL_SETTINGS.into_iter().chain(TRIAL_PATIENT).map(tried);
     command
         .arg(case_argument())
@@ -139,7 +156,12 @@ fn forecast_command() -> Command {
 }
 
 fn with_show(command: Command, what: &'static str) -> Command {
-    command.arg(Arg::new("show").long("show").value_name("NAME").help(format!("Print this {what}, to start a file from")))
+    command.arg(
+        Arg::new("show")
+            .long("show")
+            .value_name("NAME")
+            .help(format!("Print this {what}, to start a file from")),
+    )
 }
 
 /// The whole command line.

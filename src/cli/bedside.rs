@@ -35,7 +35,11 @@ pub fn given(matches: &ArgMatches) -> Vec<(&'static str, &'static str, String)> 
 ///
 /// # Errors
 /// Everything wrong with them, each naming its flag.
-pub fn record(matches: &ArgMatches, profile: Option<&str>, steadiness: Option<Steadiness>) -> Result<Record, Vec<Problem>> {
+pub fn record(
+    matches: &ArgMatches,
+    profile: Option<&str>,
+    steadiness: Option<Steadiness>,
+) -> Result<Record, Vec<Problem>> {
     let mut tables: BTreeMap<&str, Vec<String>> = BTreeMap::new();
     for (table, key, text) in given(matches) {
         let text = serde_json::to_string(&text).unwrap_or_default(); // a JSON string is a TOML basic string

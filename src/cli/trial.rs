@@ -48,11 +48,7 @@ pub fn of(matches: &ArgMatches, prefix: &str) -> Result<Trial, Vec<Problem>> {
         compliance_ml_cmh2o: value("measured", compliance),
         resistance_cmh2o_s_l: value("measured", resistance),
     };
-    let timings = [
-        time.map(Timing::InspiratoryTime),
-        flow.map(Timing::Flow),
-        ratio.map(Timing::Ratio),
-    ];
+    let timings = [time.map(Timing::InspiratoryTime), flow.map(Timing::Flow), ratio.map(Timing::Ratio)];
     let mut given = timings.into_iter().flatten();
     trial.timing = given.next();
     if given.next().is_some() {
@@ -97,9 +93,7 @@ pub fn quantity(text: &str, key: Key) -> Result<f64, Problem> {
     let reading = parse::read(text, input.dimension)
         .map_err(|unread| flag_problem(input.name, unread.to_string(), unread.help()))?;
     let typed = reading.unit.map_or(Typed::Plain, |unit| Typed::With { number: reading.number, unit });
-    input
-        .accept(reading.value, typed)
-        .map_err(|out| flag_problem(input.name, out.message, out.help))
+    input.accept(reading.value, typed).map_err(|out| flag_problem(input.name, out.message, out.help))
 }
 
 /// "180", "180 mL/min" or "x0.9".

@@ -95,7 +95,10 @@ fn gas(columns: &[Column<'_>], face: Face, rows: &mut Vec<String>) {
     let uncertain = |column: &&Column<'_>| column.outcome.interval.paco2_expected_mmhg.is_some();
     if columns.iter().any(|column| uncertain(&column)) {
         let cells = |value: &dyn Fn(&Column<'_>) -> String| -> Vec<String> {
-            columns.iter().map(|column| if uncertain(&column) { value(column) } else { String::new() }).collect()
+            columns
+                .iter()
+                .map(|column| if uncertain(&column) { value(column) } else { String::new() })
+                .collect()
         };
         let expected = cells(&|c| face.known(c.outcome.interval.paco2_expected_mmhg, Dimension::GasPressure));
         rows.push(row("  expected, all gases heard", expected.into_iter()));
@@ -110,13 +113,17 @@ fn gas(columns: &[Column<'_>], face: Face, rows: &mut Vec<String>) {
         });
         rows.push(row("  9 gases in 10 within", wide.into_iter()));
         let chance = cells(&|c| {
-            c.outcome.interval.chance_on_target.map_or_else(String::new, |chance| format!("{:.0} %", chance * 100.0))
+            c.outcome
+                .interval
+                .chance_on_target
+                .map_or_else(String::new, |chance| format!("{:.0} %", chance * 100.0))
         });
         rows.push(row("  chance to land on the goal", chance.into_iter()));
     }
     rows.push(row("pH", columns.iter().map(|c| face.known(c.outcome.state.ph, Dimension::Ph))));
     if columns.iter().any(|c| c.outcome.state.end_tidal_co2_mmhg.is_some()) {
-        let cells = columns.iter().map(|c| face.known(c.outcome.state.end_tidal_co2_mmhg, Dimension::GasPressure));
+        let cells =
+            columns.iter().map(|c| face.known(c.outcome.state.end_tidal_co2_mmhg, Dimension::GasPressure));
         rows.push(row(&format!("end-tidal CO2, {unit}"), cells));
     }
 }

@@ -36,7 +36,9 @@ pub fn words(course: &Course, face: Face) -> Vec<String> {
         .points
         .iter()
         .skip(1)
-        .map(|point| format!("{:.0} min {}", point.minutes, face.value(point.paco2_mmhg, Dimension::GasPressure)))
+        .map(|point| {
+            format!("{:.0} min {}", point.minutes, face.value(point.paco2_mmhg, Dimension::GasPressure))
+        })
         .collect();
     let settled = if course.settled_minutes > 0.0 {
         format!("Settled after about {:.0} min. ", course.settled_minutes.ceil())

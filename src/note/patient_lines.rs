@@ -60,10 +60,9 @@ pub fn gas(record: &Record, baseline: &BaselineReport, face: Face) -> Vec<String
     let mut parts = Vec::new();
     let drawn = occasion.drawn_at().map(|at| format!("gas {at}"));
     parts.push(drawn.unwrap_or_else(|| "gas".to_owned()));
-    parts.push(gas.ph.map_or_else(
-        || "pH unknown".to_owned(),
-        |ph| format!("pH {}", face.value(ph, Dimension::Ph)),
-    ));
+    parts.push(
+        gas.ph.map_or_else(|| "pH unknown".to_owned(), |ph| format!("pH {}", face.value(ph, Dimension::Ph))),
+    );
     let paco2 = gas.paco2_mmhg.unwrap_or_default();
     parts.push(format!("PaCO2 {}", face.gas(paco2)));
     if let Some(bicarbonate) = baseline.bicarbonate_mmol_l {

@@ -17,7 +17,9 @@ pub fn of(plan: &Plan, record: &Record, face: Face) -> String {
     lines.extend(patient_lines::gas(record, &plan.baseline, face));
     lines.push(goal(plan, record, face));
     if plan.now.paco2_is == "forecast" {
-        lines.push("Settings changed since the latest gas: PaCO2 now is a forecast, not a measurement.".to_owned());
+        lines.push(
+            "Settings changed since the latest gas: PaCO2 now is a forecast, not a measurement.".to_owned(),
+        );
     }
     lines.push(String::new());
     lines.extend(table(&columns(plan), face));
@@ -72,7 +74,8 @@ fn goal(plan: &Plan, record: &Record, face: Face) -> String {
     match target.asked {
         "profile" => {
             let [low, high] = target.band_mmhg;
-            let there = if target.met_by(plan.now.outcome.state.paco2_mmhg) { "already inside: " } else { "" };
+            let there =
+                if target.met_by(plan.now.outcome.state.paco2_mmhg) { "already inside: " } else { "" };
             format!(
                 "Goal PaCO2 {paco2}{ph}, {there}the band of {} is {} {}.",
                 record.profile().name,
@@ -131,7 +134,8 @@ fn verdict(line: &PlanLine, face: Face) -> String {
             format!("none known to be beyond, but unknown: {}", names.join(", "))
         }
     };
-    let goal = if line.on_target { "on the goal" } else { "NOT on the goal, the nearest that can be dialled" };
+    let goal =
+        if line.on_target { "on the goal" } else { "NOT on the goal, the nearest that can be dialled" };
     let exact = line.exact.map_or_else(String::new, |exact| {
         let digits = if exact < 100.0 { 1 } else { 0 };
         format!(" (exactly {exact:.digits$})")

@@ -38,7 +38,8 @@ pub fn base_excess(ph: f64, paco2_mmhg: f64) -> f64 {
 /// below never overshoots.
 pub fn ph_at(base_excess_mmol_l: f64, paco2_mmhg: f64) -> f64 {
     let per_ln = BUFFER_MMOL_L_PER_PH / LN_10;
-    let whole = NORMAL_BICARBONATE_MMOL_L + base_excess_mmol_l
+    let whole = NORMAL_BICARBONATE_MMOL_L
+        + base_excess_mmol_l
         + BUFFER_MMOL_L_PER_PH * (NORMAL_PH - PK + libm::log10(SOLUBILITY_MMOL_L_MMHG * paco2_mmhg));
     let miss = |h: f64| h + per_ln * libm::log(h) - whole;
     let mut h: f64 = 8.0;

@@ -51,8 +51,11 @@ impl Phases {
     /// `None` when expiration would not exceed 0.1 s or the pause leaves no time to inflate.
     pub fn at_rate(inspiratory_s: f64, pause_s: f64, rate_per_min: f64) -> Option<Self> {
         let expiratory_s = 60.0 / rate_per_min - inspiratory_s;
-        (expiratory_s > SHORTEST_EXPIRATION_S && inspiratory_s > pause_s)
-            .then_some(Self { inspiratory_s, pause_s, expiratory_s })
+        (expiratory_s > SHORTEST_EXPIRATION_S && inspiratory_s > pause_s).then_some(Self {
+            inspiratory_s,
+            pause_s,
+            expiratory_s,
+        })
     }
 
     /// The whole breath, s.

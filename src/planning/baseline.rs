@@ -121,10 +121,8 @@ impl Baseline {
         let barometric = patient.barometric_pressure_mmhg.unwrap_or_else(|| {
             patient.altitude_m.map_or(oxygen::SEA_LEVEL_MMHG, oxygen::barometric_at_altitude_mmhg)
         });
-        let alveolar = drawn
-            .settings
-            .fio2
-            .map(|fio2| oxygen::alveolar_po2_mmhg(fio2, barometric, drawn.paco2_mmhg));
+        let alveolar =
+            drawn.settings.fio2.map(|fio2| oxygen::alveolar_po2_mmhg(fio2, barometric, drawn.paco2_mmhg));
         let pao2 = drawn.occasion.entry.gas.pao2_mmhg;
         Ok(Self {
             label: record.label().to_owned(),
@@ -185,9 +183,9 @@ impl Blood {
                 );
             }
         }
-        let ph = gas
-            .ph
-            .or_else(|| gas.bicarbonate_mmol_l.map(|bicarbonate| acid_base::ph(bicarbonate, drawn.paco2_mmhg)));
+        let ph = gas.ph.or_else(|| {
+            gas.bicarbonate_mmol_l.map(|bicarbonate| acid_base::ph(bicarbonate, drawn.paco2_mmhg))
+        });
         if ph.is_none() {
             cautions.say(
                 "ph_unknown",
@@ -216,7 +214,9 @@ fn settings_now(occasions: &[Occasion]) -> Result<(&Occasion, &Settings), Vec<Fa
         InForce::Missing(key) => Err(vec![Fault::new(
             [Place::in_entry(last.number, "settings", key)],
             format!("the settings in force lack {}", key.replace('_', " ")),
-            format!("Give {key} (and whatever else is set: control, rate, tidal_volume or inspiratory_pressure, peep)."),
+            format!(
+                "Give {key} (and whatever else is set: control, rate, tidal_volume or inspiratory_pressure, peep)."
+            ),
         )]),
     }
 }

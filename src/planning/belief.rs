@@ -124,10 +124,9 @@ impl Belief {
             let mut noise = figures.gas * figures.gas;
             if let Some(previous) = previous {
                 let ln_change = libm::log(ventilation(gas) / ventilation(previous));
-                belief.variance += figures.wander_per_hour
-                    * figures.wander_per_hour
-                    * (gas.hours - previous.hours).max(0.0)
-                    + (figures.change * ln_change) * (figures.change * ln_change);
+                belief.variance +=
+                    figures.wander_per_hour * figures.wander_per_hour * (gas.hours - previous.hours).max(0.0)
+                        + (figures.change * ln_change) * (figures.change * ln_change);
                 let settled_at = previous.paco2_mmhg * ventilation(previous) / ventilation(gas);
                 noise += unsettled(baseline, gas.minutes_since_change, previous.paco2_mmhg, settled_at);
             }

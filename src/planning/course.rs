@@ -52,7 +52,12 @@ impl Course {
             })
             .collect();
         let next = (settled_minutes / GAS_STEP_MIN).ceil() * GAS_STEP_MIN;
-        Self { points, settled_minutes, next_gas_minutes: next.clamp(EARLIEST_GAS_MIN, LATEST_GAS_MIN), curve }
+        Self {
+            points,
+            settled_minutes,
+            next_gas_minutes: next.clamp(EARLIEST_GAS_MIN, LATEST_GAS_MIN),
+            curve,
+        }
     }
 
     /// True when PaCO2 has not settled within the hour.

@@ -191,7 +191,14 @@ impl<'a> Forecaster<'a> {
     }
 
     /// Plain arithmetic from the latest gas: `PaCO2·V̇A/V̇A'`, with what V̇CO2 and 1 − f have in common cancelled.
-    fn arithmetic(&self, reading: Reading, settings: &Settings, rate: f64, tidal: f64, co2: f64) -> Option<f64> {
+    fn arithmetic(
+        &self,
+        reading: Reading,
+        settings: &Settings,
+        rate: f64,
+        tidal: f64,
+        co2: f64,
+    ) -> Option<f64> {
         let gas = &self.baseline.gas;
         let room = tidal - self.series_with(reading, settings);
         let before = gas.rate_per_min * (gas.tidal_volume_ml - reading.series_ml);
@@ -231,7 +238,8 @@ impl<'a> Forecaster<'a> {
     /// space).
     pub fn state(&self, dialled: &Dialled) -> Option<State> {
         let paco2 = self.paco2_mmhg(dialled)?;
-        let fall = self.curve(dialled, paco2).map(|course| (self.now_paco2_mmhg - course.paco2_mmhg(60.0)).max(0.0));
+        let fall =
+            self.curve(dialled, paco2).map(|course| (self.now_paco2_mmhg - course.paco2_mmhg(60.0)).max(0.0));
         self.describe(dialled, paco2, fall)
     }
 
@@ -309,7 +317,7 @@ impl<'a> Forecaster<'a> {
     }
 
     /// The way from PaCO2 now to `final_mmhg`; `None` without predicted weight or CO2 output.
-    fn curve(&self, dialled: &Dialled, final_mmhg: f64) -> Option<stores::Course> {
+    pub fn curve(&self, dialled: &Dialled, final_mmhg: f64) -> Option<stores::Course> {
         let weight = self.baseline.predicted_weight_kg?;
         let output = self.co2_output_ml_min? * dialled.co2_factor;
         Some(stores::Course::new(weight, output, self.now_paco2_mmhg, final_mmhg))
@@ -348,8 +356,7 @@ impl<'a> Forecaster<'a> {
         // Ventilation ratios are taken throughout with the dead space of section 1, not the posterior one.
         let section_one = self.baseline.exchange.series_ml;
         let before = gas.rate_per_min * (gas.tidal_volume_ml - section_one);
-        let ahead =
-            rate * (tidal - section_one - (settings.apparatus_dead_space_ml - gas.apparatus_ml));
+        let ahead = rate * (tidal - section_one - (settings.apparatus_dead_space_ml - gas.apparatus_ml));
         if ahead <= 0.0 {
             return None;
         }
@@ -361,10 +368,8 @@ impl<'a> Forecaster<'a> {
             tidal_volume_ml: tidal,
             apparatus_ml: settings.apparatus_dead_space_ml,
             ln_ventilation: libm::log(ahead / before),
-            ln_readings: readings
-                .volume
-                .zip(readings.fraction)
-                .map(|(volume, fraction)| libm::log(volume / fraction)),
+            ln_readings:
+                readings.volume.zip(readings.fraction).map(|(volume, fraction)| libm::log(volume / fraction)),
             shift: libm::log(dialled.co2_factor) + other,
         }))
     }
@@ -415,8 +420,7 @@ fn pressure_breath(dialled: &Dialled, phases: Phases) -> Option<PressureBreath> 
 /// the alveolar fraction that the whole then leaves, not below 0.
 fn split_reading(baseline: &Baseline, belief: &Belief) -> (Reading, Option<f64>) {
     let exchange = &baseline.exchange;
-    let as_charted =
-        Reading { series_ml: exchange.series_ml, alveolar_fraction: exchange.alveolar_fraction };
+    let as_charted = Reading { series_ml: exchange.series_ml, alveolar_fraction: exchange.alveolar_fraction };
     if belief.gases() < 2 {
         return (as_charted, exchange.co2_output_ml_min);
     }
@@ -436,4 +440,3 @@ fn split_reading(baseline: &Baseline, belief: &Belief) -> (Reading, Option<f64>)
     let implied = output(useful, arterial, gas.temperature).ml_per_min();
     (Reading { series_ml, alveolar_fraction: Some(0.0) }, Some(implied))
 }
-

@@ -132,7 +132,8 @@ impl Pairs {
     /// [`NoGentle::NoneAllowed`] when no pair is allowed.
     pub fn choose(&self, without: Option<LimitId>) -> Result<Chosen, NoGentle> {
         let counts: Vec<bool> = self.limits.iter().map(|id| Some(*id) != without).collect();
-        let strict = |pair: &&Pair| pair.excess.iter().zip(&counts).all(|(excess, counts)| !counts || *excess <= 0.0);
+        let strict =
+            |pair: &&Pair| pair.excess.iter().zip(&counts).all(|(excess, counts)| !counts || *excess <= 0.0);
         let allowed = |pair: &&Pair| {
             pair.excess.iter().zip(&self.excess_now).zip(&counts).all(|((excess, now), counts)| {
                 !counts || *excess <= 0.0 || (*now > 0.0 && *excess <= now + TIE)

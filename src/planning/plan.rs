@@ -12,7 +12,10 @@ use super::levers::{Lever, levers};
 use super::limits::Verdict;
 use super::outcome::{Outcome, State};
 use super::remarks;
-use super::solve::{RATES_PER_MIN, exact_rate, exact_volume, settable_rates, settable_volumes, summit_of, volume_range, Summit};
+use super::solve::{
+    RATES_PER_MIN, Summit, exact_rate, exact_volume, settable_rates, settable_volumes, summit_of,
+    volume_range,
+};
 use super::target::{Asked, Target};
 use super::trial::{Dialled, Trial};
 use crate::case::entry::Aim;
@@ -154,10 +157,12 @@ pub fn plan(record: &Record, request: &Request) -> Result<Plan, Vec<Fault>> {
     let forecaster =
         Forecaster::new(&baseline, super::figures(record), request.held).map_err(|fault| vec![fault])?;
     let base = request.trial.apply(&forecaster).map_err(|fault| vec![fault])?;
-    let target = Target::find(request.asked, &baseline, forecaster.now_paco2_mmhg()).map_err(|fault| vec![fault])?;
+    let target =
+        Target::find(request.asked, &baseline, forecaster.now_paco2_mmhg()).map_err(|fault| vec![fault])?;
     let now = report_now(&forecaster, Some(target.band_mmhg))?;
     let mut cautions = baseline.cautions.clone();
-    let solver = Solver { forecaster: &forecaster, base, target, now: &now.outcome.state, least: request.least };
+    let solver =
+        Solver { forecaster: &forecaster, base, target, now: &now.outcome.state, least: request.least };
     let asked = |aim| request.aims.contains(&aim);
     let mut plans = Vec::new();
     plans.extend(asked(Aim::Rate).then(|| solver.by_rate()).flatten());
@@ -238,9 +243,8 @@ impl Solver<'_> {
         let steps = &self.forecaster.baseline().profile.steps;
         let tries = settable_rates(steps).map(|rate| (self.base.with_rate(rate), rate));
         let (dialled, _) = self.nearest(tries, self.base.settings.rate_per_min)?;
-        let reachable = exact.is_some_and(|exact| {
-            self.settable(exact, RATES_PER_MIN, &self.base.with_rate(exact))
-        });
+        let reachable =
+            exact.is_some_and(|exact| self.settable(exact, RATES_PER_MIN, &self.base.with_rate(exact)));
         self.line("rate", exact, dialled, reachable)
     }
 
@@ -278,7 +282,13 @@ impl Solver<'_> {
         best.map(|(dialled, miss, _)| (dialled, miss))
     }
 
-    fn line(&self, aim: &'static str, exact: Option<f64>, dialled: Dialled, reachable: bool) -> Option<PlanLine> {
+    fn line(
+        &self,
+        aim: &'static str,
+        exact: Option<f64>,
+        dialled: Dialled,
+        reachable: bool,
+    ) -> Option<PlanLine> {
         let outcome = self.forecaster.outcome(&dialled, Some(self.target.band_mmhg))?;
         let on_target = reachable || self.target.met_by(outcome.state.paco2_mmhg);
         let blocked_by = if on_target { Vec::new() } else { self.beyond_at_exact() };
@@ -311,9 +321,8 @@ impl Solver<'_> {
     fn beyond_at_exact(&self) -> Vec<LimitId> {
         let target = self.target.paco2_mmhg;
         let rate = exact_rate(self.forecaster, &self.base, target).map(|rate| self.base.with_rate(rate));
-        let volume = || {
-            exact_volume(self.forecaster, &self.base, target).map(|volume| self.base.with_volume(volume))
-        };
+        let volume =
+            || exact_volume(self.forecaster, &self.base, target).map(|volume| self.base.with_volume(volume));
         let at = |dialled: Option<Dialled>| self.forecaster.outcome(&dialled?, None);
         let Some(outcome) = at(rate).or_else(|| at(volume())) else { return Vec::new() };
         let beyond = outcome.limits.iter().filter(|limit| limit.verdict == Verdict::Beyond);

@@ -32,7 +32,12 @@ pub fn of_patient(forecaster: &Forecaster<'_>, record: &Record, now: &Now, cauti
     of_breathing(forecaster, cautions);
     of_lung(forecaster, cautions);
     of_readings_at_bedside(record, &now.outcome.state, cautions);
-    if record.occasions().iter().zip(record.occasions().iter().skip(1)).any(|(one, next)| one.number > next.number) {
+    if record
+        .occasions()
+        .iter()
+        .zip(record.occasions().iter().skip(1))
+        .any(|(one, next)| one.number > next.number)
+    {
         cautions.say(
             "entries_out_of_order",
             "Entries do not stand in the order of their times; they are read in the order of time. Check the clock, and \
@@ -88,7 +93,9 @@ fn of_breathing(forecaster: &Forecaster<'_>, cautions: &mut Cautions) {
     };
     if !(low..=high).contains(&per_set) {
         let (expected, look) = match baseline.now.control() {
-            Control::Pressure => ("of what compliance and resistance would give", "those values and for a leak"),
+            Control::Pressure => {
+                ("of what compliance and resistance would give", "those values and for a leak")
+            }
             Control::Volume | Control::Support => ("of the set volume", "for a leak and the flow sensor"),
         };
         cautions.say(
@@ -159,7 +166,8 @@ fn of_readings_at_bedside(record: &Record, now: &State, cautions: &mut Cautions)
     let Some(last) = record.occasions().last() else { return };
     let measured: &Measured = &last.entry.measured;
     let peep = last.in_force.mandatory().and_then(|settings| settings.peep_cmh2o);
-    let total = measured.total_peep_cmh2o.or(measured.auto_peep_cmh2o.zip(peep).map(|(auto, peep)| auto + peep));
+    let total =
+        measured.total_peep_cmh2o.or(measured.auto_peep_cmh2o.zip(peep).map(|(auto, peep)| auto + peep));
     for (id, name, measured, model) in [
         ("plateau_differs", "plateau", measured.plateau_cmh2o, now.plateau_cmh2o),
         ("peak_differs", "peak", measured.peak_cmh2o, now.peak_cmh2o),

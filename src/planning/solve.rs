@@ -117,8 +117,7 @@ pub fn summit_of(forecaster: &Forecaster<'_>, dialled: &Dialled) -> Option<Summi
 pub fn exact_rate(forecaster: &Forecaster<'_>, dialled: &Dialled, target_mmhg: f64) -> Option<f64> {
     let needed = forecaster.needed_ml_min(target_mmhg, dialled.co2_factor);
     let rate = if volume_hangs_on_rate(dialled) {
-        let top = summit_rate(forecaster, dialled)
-            .unwrap_or_else(|| fastest_rate(dialled) * (1.0 - 1e-9));
+        let top = summit_rate(forecaster, dialled).unwrap_or_else(|| fastest_rate(dialled) * (1.0 - 1e-9));
         let own = forecaster.effective_rate(SLOWEST_PER_MIN); // below it the patient breathes on
         if own >= top {
             return None;

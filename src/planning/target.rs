@@ -77,7 +77,8 @@ impl Target {
                 typed(paco2)
             }
             Asked::Profile => {
-                let band = profile_band_mmhg(baseline.profile.target, excess).ok_or_else(|| no_ph("profile"))?;
+                let band =
+                    profile_band_mmhg(baseline.profile.target, excess).ok_or_else(|| no_ph("profile"))?;
                 let [low, high] = band;
                 let inward = INWARD_MMHG.min((high - low) / 2.0);
                 let aimed = if now_mmhg < low {
@@ -130,7 +131,9 @@ fn in_range(paco2_mmhg: f64, ph: f64) -> Result<(), Fault> {
     let which = if ph.is_finite() { format!("pH {ph:.2}") } else { "the profile's pH band".to_owned() };
     Err(Fault::new(
         [Place::top("target", "to_ph")],
-        format!("{which} {stands} at this patient's base excess; ventilation can aim at {low:.0} to {high:.0} mmHg"),
+        format!(
+            "{which} {stands} at this patient's base excess; ventilation can aim at {low:.0} to {high:.0} mmHg"
+        ),
         "The disturbance is metabolic: treat its cause, and aim at a PaCO2, for example --to-paco2 30.",
     ))
 }

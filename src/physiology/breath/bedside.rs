@@ -31,7 +31,12 @@ pub fn compliance(tidal_volume_ml: f64, driving_cmh2o: f64) -> f64 {
 }
 
 /// The share of what expiration could at most empty: `r = (VT/(plateau − PEEP))/(Te/RE)`; 1 or more is impossible.
-pub fn emptying_share(tidal_volume_ml: f64, plateau_above_peep: f64, expiratory_s: f64, resistance: f64) -> f64 {
+pub fn emptying_share(
+    tidal_volume_ml: f64,
+    plateau_above_peep: f64,
+    expiratory_s: f64,
+    resistance: f64,
+) -> f64 {
     (tidal_volume_ml / 1000.0 / plateau_above_peep) / (expiratory_s / resistance)
 }
 

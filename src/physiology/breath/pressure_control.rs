@@ -22,8 +22,7 @@ pub fn filling(lung: &Lung, phases: &Phases) -> Filling {
     let unfilled = lung
         .inspiratory_resistance
         .map_or(0.0, |resistance| libm::exp(-phases.inspiratory_s / lung.time_constant_s(resistance)));
-    let unemptied =
-        lung.expiratory_time_constant_s().map(|tau| libm::exp(-phases.expiratory_s / tau));
+    let unemptied = lung.expiratory_time_constant_s().map(|tau| libm::exp(-phases.expiratory_s / tau));
     let (Some(left), Some(_)) = (unemptied, lung.inspiratory_resistance) else {
         return Filling { tidal: 1.0 - unfilled, end_inspiratory: 1.0 - unfilled, trapped: None };
     };
@@ -77,9 +76,10 @@ impl PressureBreath {
             driving_pressure_cmh2o: Some(full_cmh2o * share.tidal),
             plateau_cmh2o: self.peep_cmh2o.map(|peep| peep + full_cmh2o * share.end_inspiratory),
             peak_cmh2o: peak,
-            mean_cmh2o: self.peep_cmh2o.zip(peak).map(|(peep, peak)| {
-                (inspiratory_s * peak + expiratory_s * peep) / self.phases.period_s()
-            }),
+            mean_cmh2o: self
+                .peep_cmh2o
+                .zip(peak)
+                .map(|(peep, peak)| (inspiratory_s * peak + expiratory_s * peep) / self.phases.period_s()),
             work_cmh2o_ml: peak.map(|peak| full_ml * share.tidal * peak),
             expiratory_time_constants: lung
                 .expiratory_time_constant_s()

@@ -110,7 +110,8 @@ mod tests {
             Lung { compliance_ml_cmh2o: 50.0, inspiratory_resistance: None, expiratory_resistance: None };
         let out = breath().breathe(&lung);
         assert_eq!(out.plateau_cmh2o, Some(15.0));
-        for unknown in [out.peak_cmh2o, out.mean_cmh2o, out.auto_peep_cmh2o, out.total_peep_cmh2o, out.work_cmh2o_ml]
+        for unknown in
+            [out.peak_cmh2o, out.mean_cmh2o, out.auto_peep_cmh2o, out.total_peep_cmh2o, out.work_cmh2o_ml]
         {
             assert_eq!(unknown, None);
         }

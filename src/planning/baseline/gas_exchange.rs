@@ -235,7 +235,9 @@ impl Reading {
         if mmhg > 1.15 * arterial {
             return Err(Fault::new(
                 [self.place("end_tidal_co2"), Place::in_entry(self.number, "gas", "paco2")],
-                format!("an end-tidal PCO2 of {mmhg:.0} mmHg cannot stand so far above arterial {arterial:.0} mmHg"),
+                format!(
+                    "an end-tidal PCO2 of {mmhg:.0} mmHg cannot stand so far above arterial {arterial:.0} mmHg"
+                ),
                 "Check both values and that they belong to the same minutes.",
             ));
         }

@@ -222,8 +222,7 @@ impl Mechanics {
         cautions: &mut Cautions,
     ) -> Result<(), Fault> {
         let Bedside { number, settings, measured, phases } = *at;
-        let corrects =
-            measured.circuit_compliance_ml_cmh2o.is_some() && measured.plateau_cmh2o.is_some();
+        let corrects = measured.circuit_compliance_ml_cmh2o.is_some() && measured.plateau_cmh2o.is_some();
         if measured.exhaled_tidal_volume_ml.is_some() || corrects {
             let volume = measured.exhaled_tidal_volume_ml.unwrap_or(set_ml);
             self.volume_per_set = Self::corrected_volume(number, volume, settings, measured)? / set_ml;
@@ -236,12 +235,9 @@ impl Mechanics {
             constant_flow: flow_pattern == FlowPattern::Constant,
             phases,
         };
-        if let (Some(peak), Some(plateau), None, true) = (
-            measured.peak_cmh2o,
-            measured.plateau_cmh2o,
-            measured.resistance_cmh2o_s_l,
-            breath.constant_flow,
-        ) {
+        if let (Some(peak), Some(plateau), None, true) =
+            (measured.peak_cmh2o, measured.plateau_cmh2o, measured.resistance_cmh2o_s_l, breath.constant_flow)
+        {
             if peak > plateau {
                 self.inspiratory_resistance =
                     Some(bedside::inspiratory_resistance(peak, plateau, breath.flow_l_s()));
@@ -402,10 +398,14 @@ impl Mechanics {
             self.trapping_unread = false;
             let auto = bedside::auto_peep_from_hold(pressure, above, &phases);
             let compliance = given_compliance.unwrap_or(volume_ml / (above - auto));
-            let resistance =
-                bedside::inspiratory_resistance_from_hold(pressure, above, auto, compliance, phases.inspiratory_s);
-            let share =
-                bedside::emptying_share(volume_ml, above, phases.expiratory_s, resistance.value());
+            let resistance = bedside::inspiratory_resistance_from_hold(
+                pressure,
+                above,
+                auto,
+                compliance,
+                phases.inspiratory_s,
+            );
+            let share = bedside::emptying_share(volume_ml, above, phases.expiratory_s, resistance.value());
             if given_compliance.is_none()
                 && (share > bedside::EMPTYING_LIMIT || compliance > bedside::LARGEST_COMPLIANCE)
             {

@@ -1,0 +1,141 @@
+//! What is done outside the state: files, the clipboard, the terminal. All of it in one place.
+
+use std::io::Write;
+use std::path::{Path, PathBuf};
+
+use super::action::Action;
+use super::state::{Origin, State};
+use crate::case::append::{self, Hold, NotAdded};
+use crate::case::entry::Entry;
+use crate::note::{forecast_text, plan_text};
+use crate::planning::forecast::Held;
+use crate::planning::plan::{Request, forecast, plan};
+use crate::planning::trial::Trial;
+
+/// One thing to be done.
+#[derive(Debug, Clone, PartialEq)]
+pub enum Effect {
+    /// Add an entry to the case file.
+    Append(Box<Entry>),
+    /// Begin a case file with this text and add an entry.
+    Create {
+        /// The file.
+        path: PathBuf,
+        /// What it begins with.
+        text: String,
+        /// The entry.
+        entry: Box<Entry>,
+    },
+    /// Write the note to this file.
+    WriteNote(PathBuf),
+    /// Send the note to the terminal's clipboard.
+    CopyNote,
+    /// Listen to the mouse, or not.
+    Mouse(bool),
+    /// Stop for the shell.
+    Suspend,
+    /// Leave.
+    Quit,
+}
+
+/// The case file as it was last read, and the right to chart in it.
+#[derive(Debug, Default)]
+pub struct Files {
+    bytes: Vec<u8>,
+    hold: Option<Hold>,
+}
+
+impl Files {
+    /// Takes the right to chart in the state's file; where another program has it, the state says so and only reads.
+    pub fn open(state: &mut State, bytes: Vec<u8>) -> Self {
+        let Origin::File(path) = &state.origin else { return Self { bytes, hold: None } };
+        match append::hold(path) {
+            Ok(hold) => Self { bytes, hold: Some(hold) },
+            Err(why) => {
+                let why = lower_first(&why.to_string());
+                state.message = Some(format!("Read only: {why}."));
+                state.read_only = Some(why);
+                Self { bytes, hold: None }
+            }
+        }
+    }
+
+    /// Adds an entry; what happened comes back as an action.
+    pub fn append(&mut self, path: &Path, entry: &Entry) -> Action {
+        if self.hold.is_none() {
+            return Action::Failed("Nothing was charted: the file is only read here.".to_owned());
+        }
+        match append::append(path, &self.bytes, entry) {
+            Ok((bytes, record)) => {
+                self.bytes = bytes;
+                Action::Charted(Box::new(record), path.to_owned())
+            }
+            Err(why) => not_added(&why),
+        }
+    }
+
+    /// Begins a file; what happened comes back as an action.
+    pub fn create(&mut self, path: &Path, text: &str, entry: &Entry) -> Action {
+        match append::create(path, text, entry)
+            .and_then(|(bytes, record)| Ok((bytes, record, append::hold(path)?)))
+        {
+            Ok((bytes, record, hold)) => {
+                *self = Self { bytes, hold: Some(hold) };
+                Action::Charted(Box::new(record), path.to_owned())
+            }
+            Err(why) => not_added(&why),
+        }
+    }
+}
+
+fn not_added(why: &NotAdded) -> Action {
+    Action::Failed(format!("Not charted: {}.", lower_first(&why.to_string())))
+}
+
+fn lower_first(text: &str) -> String {
+    let mut letters = text.chars();
+    letters.next().map_or_else(String::new, |first| first.to_lowercase().chain(letters).collect())
+}
+
+/// The note of what is shown: the forecast of the trial, or the plan where nothing is turned.
+///
+/// # Errors
+/// A sentence, where the record cannot be forecast.
+pub fn note(state: &State) -> Result<String, String> {
+    let sentence = |faults: Vec<crate::case::fault::Fault>| {
+        faults.first().map_or_else(String::new, |fault| format!("{}. {}", fault.message, fault.help))
+    };
+    let record = state.record();
+    if state.turned.trial == Trial::default() {
+        let request = Request { asked: state.turned.goal, ..Request::default() };
+        return plan(&record, &request)
+            .map(|plan| plan_text::of(&plan, &record, state.face))
+            .map_err(sentence);
+    }
+    forecast(&record, &state.turned.trial, Held::Split)
+        .map(|forecast| forecast_text::of(&forecast, &record, state.face))
+        .map_err(sentence)
+}
+
+/// Writes the note to a new file, for its owner's eyes only; what happened comes back as an action.
+pub fn write_note(state: &State, path: &Path) -> Action {
+    let text = match note(state) {
+        Ok(text) => text,
+        Err(why) => return Action::Failed(why),
+    };
+    let folder =
+        path.parent().filter(|folder| !folder.as_os_str().is_empty()).unwrap_or_else(|| Path::new("."));
+    let written = tempfile::NamedTempFile::new_in(folder).and_then(|mut beside| {
+        beside.write_all(text.as_bytes())?;
+        beside.as_file().sync_all()?;
+        beside.persist_noclobber(path).map_err(|error| error.error)?;
+        Ok(())
+    });
+    match written {
+        Ok(()) => Action::Done(format!("The note is in {}.", path.display())),
+        Err(error) if error.kind() == std::io::ErrorKind::AlreadyExists => {
+            Action::Failed(format!("There is a file {} already: move it away first.", path.display()))
+        }
+        Err(error) => Action::Failed(format!("The note was not written to {}: {error}.", path.display())),
+    }
+}
