@@ -1,4 +1,4 @@
-//! The patient's record: what a person charts, read from TOML or flags, added to a file, checked once, and the profile of limits.
+//! The patient's record: what a person charts, read from TOML or flags, checked once, and the profile of limits.
 
 mod amend;
 pub mod append;
@@ -6,6 +6,7 @@ mod contradiction;
 pub mod entry;
 pub mod fault;
 pub mod file;
+pub mod flag;
 mod inherit;
 pub mod moment;
 mod plausible;

@@ -5,6 +5,9 @@ mod arguments;
 mod bedside;
 pub mod checked;
 pub mod complaint;
+#[cfg(feature = "panel")]
+mod panel;
+mod review;
 mod source;
 mod trial;
 
@@ -91,14 +94,24 @@ fn dispatch(matches: &ArgMatches) -> Said {
     let said = match matches.subcommand() {
         Some(("plan", matches)) => answer::plan(matches, colour),
         Some(("forecast", matches)) => answer::forecast(matches, colour),
+        Some(("review", matches)) => review::review(matches, colour),
         Some(("check", matches)) => answer::check(matches, colour),
         Some(("profiles", matches)) => answer::profiles(matches, colour),
         Some(("cases", matches)) => answer::cases(matches, colour),
-        Some(("completions", matches)) => answer::completions(matches),
+        Some(("completions", matches)) => Ok(answer::completions(matches)),
         Some(("manual", _)) => answer::manual(),
-        _ => answer::plan_of(matches, colour),
+        _ => opened(matches, colour),
     };
     said.unwrap_or_else(|complaint| complaint)
+}
+
+/// `tidewright` alone or with a case: the panel, or the plan where there is no terminal to open it on.
+fn opened(matches: &ArgMatches, colour: Colours) -> Result<Said, Said> {
+    #[cfg(feature = "panel")]
+    if panel::can_open(matches) {
+        return panel::open(matches, colour);
+    }
+    answer::plan_of(matches, colour)
 }
 
 /// Whether output and errors are coloured.
@@ -111,7 +124,7 @@ pub struct Colours {
 }
 
 impl Colours {
-    /// `--color` first, then NO_COLOR, then whether it goes to a terminal.
+    /// `--color` first, then `NO_COLOR`, then whether it goes to a terminal.
     fn chosen(matches: &ArgMatches) -> Self {
         let matches = matches.subcommand().map_or(matches, |(_, matches)| matches);
         match matches.get_one::<String>("color").map(String::as_str) {

@@ -15,6 +15,7 @@ pub mod outcome;
 pub mod plan;
 pub mod remarks;
 pub mod score;
+pub mod review;
 pub mod solve;
 pub mod target;
 pub mod trial;

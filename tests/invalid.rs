@@ -1,6 +1,13 @@
 //! Every way to be wrong is a file whose name states the fault; what is said about it is a snapshot to be read as a
 //! tired clinician would.
 
+#![allow(
+    clippy::unwrap_used,
+    clippy::panic,
+    clippy::indexing_slicing,
+    reason = "a test may stop at the first surprise"
+)]
+
 use std::fs;
 use std::path::{Path, PathBuf};
 
@@ -117,5 +124,50 @@ fn a_byte_taken_out_anywhere_reads_or_is_drawn_without_a_panic() {
         let problems = problems(&bytes, Path::new("cut.toml"));
         let drawn = complaint::draw(&problems, Some(("cut.toml", &text)), false);
         assert_eq!(drawn.is_empty(), problems.is_empty());
+    }
+}
+
+mod anything {
+    use proptest::prelude::*;
+
+    use super::{Path, complaint, presets, problems, read};
+
+    /// Lines of real cases in any order, some of them spoilt.
+    fn shuffled_lines() -> impl Strategy<Value = String> {
+        let lines: Vec<&str> = presets::CASES.iter().flat_map(|preset| preset.text.lines()).collect();
+        proptest::collection::vec((0..lines.len(), proptest::option::of((any::<char>(), 0..20_usize))), 0..40)
+            .prop_map(move |picks| {
+                let mut text = String::from("format = 1\n");
+                for (index, spoil) in picks {
+                    let mut line = lines[index].to_owned();
+                    if let Some((letter, place)) = spoil {
+                        let place = line.char_indices().nth(place).map_or(line.len(), |(byte, _)| byte);
+                        line.insert(place, letter);
+                    }
+                    text.push_str(&line);
+                    text.push('\n');
+                }
+                text
+            })
+    }
+
+    fn is_read_or_drawn(bytes: &[u8]) {
+        let text = read::as_shown(bytes);
+        let problems = problems(bytes, Path::new("bed.toml"));
+        let drawn = complaint::draw(&problems, Some(("bed.toml", &text)), false);
+        assert_eq!(drawn.is_empty(), problems.is_empty());
+        assert!(!drawn.contains(|letter: char| letter.is_control() && letter != '\n'), "{drawn:?}");
+    }
+
+    proptest! {
+        #[test]
+        fn any_bytes(bytes in proptest::collection::vec(any::<u8>(), 0..200)) {
+            is_read_or_drawn(&bytes);
+        }
+
+        #[test]
+        fn any_order_of_lines(text in shuffled_lines()) {
+            is_read_or_drawn(text.as_bytes());
+        }
     }
 }

@@ -38,7 +38,8 @@ pub(super) fn corrected(entries: &[Entry]) -> (Vec<Corrected>, Vec<Fault>) {
         // An amendment of an amendment corrects the entry at the root of both.
         let root = amends.checked_sub(1).and_then(|index| roots.get(index)).copied();
         roots.push(root.unwrap_or(number));
-        match root.and_then(|root| standing.iter_mut().find(|held| held.number == root)) {
+        let index = root.and_then(|root| standing.binary_search_by_key(&root, |held| held.number).ok());
+        match index.and_then(|index| standing.get_mut(index)) {
             Some(held) => amend(held, number, entry),
             None => faults.push(astray(number, amends, entries.len())),
         }

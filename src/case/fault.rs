@@ -34,7 +34,7 @@ impl fmt::Display for Place {
 }
 
 /// One thing wrong with an input: a sentence with its values, and the next step.
-#[derive(Debug, Clone, PartialEq, Eq, thiserror::Error)]
+#[derive(Debug, Clone, PartialEq, Eq, Hash, thiserror::Error)]
 #[error("{message}")]
 pub struct Fault {
     /// The values at fault, the most telling first; never empty.

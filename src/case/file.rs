@@ -82,7 +82,10 @@ pub fn profile(name: &str, case: Option<&Path>) -> Result<Profile, String> {
     let path = folder.join(name);
     let bytes = bytes(&path).map_err(|unreadable| match unreadable {
         Unreadable::Absent(path) => {
-            format!("there is no built-in profile \"{name}\", and no file {}", path.display())
+            let built_in = presets::PROFILES.map(|preset| preset.name);
+            let near = read::nearest(name, &built_in);
+            let near = near.map_or_else(String::new, |near| format!(" (did you mean {near}?)"));
+            format!("there is no built-in profile \"{name}\"{near}, and no file {}", path.display())
         }
         other => other.to_string(),
     })?;
@@ -90,6 +93,6 @@ pub fn profile(name: &str, case: Option<&Path>) -> Result<Profile, String> {
         let count = problems.len();
         let errors = if count == 1 { "an error".to_owned() } else { format!("{count} errors") };
         let path = path.display();
-        format!("the profile {path} has {errors}: tidewright check {path} shows them")
+        format!("the profile {path} has {errors}: tidewright check {path} shows what is wrong")
     })
 }

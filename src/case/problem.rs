@@ -78,12 +78,28 @@ impl Spans {
     }
 }
 
-/// The line and column of a byte, both from 1, the column counted in characters.
-pub fn line_and_column(text: &str, byte: usize) -> (usize, usize) {
-    let before = text.get(..byte).unwrap_or(text);
-    let line_start = before.rfind('\n').map_or(0, |end| end + 1);
-    let column = before.get(line_start..).unwrap_or("").chars().count();
-    (before.matches('\n').count() + 1, column + 1)
+/// Where the lines of a text begin, for many look-ups.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct Lines<'t> {
+    text: &'t str,
+    starts: Vec<usize>,
+}
+
+impl<'t> Lines<'t> {
+    /// The lines of `text`.
+    pub fn of(text: &'t str) -> Self {
+        let starts = std::iter::once(0).chain(text.match_indices('\n').map(|(end, _)| end + 1)).collect();
+        Self { text, starts }
+    }
+
+    /// The line and column of a byte, both from 1, the column counted in characters.
+    pub fn position(&self, byte: usize) -> (usize, usize) {
+        let byte = byte.min(self.text.len());
+        let line = self.starts.partition_point(|start| *start <= byte);
+        let start = line.checked_sub(1).and_then(|index| self.starts.get(index)).copied().unwrap_or(0);
+        let column = self.text.get(start..byte).unwrap_or("").chars().count();
+        (line, column + 1)
+    }
 }
 
 #[cfg(test)]
@@ -92,10 +108,12 @@ mod tests {
 
     #[test]
     fn columns_are_counted_in_characters() {
-        assert_eq!(line_and_column("", 0), (1, 1));
-        assert_eq!(line_and_column("a\nbü = 1", 6), (2, 4));
-        assert_eq!(line_and_column("a\r\nb", 3), (2, 1));
-        assert_eq!(line_and_column("abc", 99), (1, 4));
+        let position = |text: &str, byte: usize| Lines::of(text).position(byte);
+        assert_eq!(position("", 0), (1, 1));
+        assert_eq!(position("a\nbü = 1", 5), (2, 3));
+        assert_eq!(position("a\r\nb", 3), (2, 1));
+        assert_eq!(position("a\n", 2), (2, 1));
+        assert_eq!(position("abc", 99), (1, 4));
     }
 
     #[test]

@@ -15,8 +15,11 @@ use super::fault::Place;
 use super::problem::{Problem, Spans};
 use super::profile::Profile;
 use super::record::{Draft, Record, Steadiness};
+use syntax::Slips;
+pub(super) use walk::text_to_number;
 use walk::{Value, Walk};
 
+pub use nearest::nearest;
 pub use profile::profile;
 pub use syntax::as_shown;
 
@@ -63,6 +66,14 @@ pub fn kind(bytes: &[u8]) -> Kind {
 /// # Errors
 /// Everything wrong with it, in the order of the text: not UTF-8, not TOML, unknown keys, values of a wrong kind or
 /// unit, implausible values, contradictions.
+///
+/// ```
+/// use tidewright::case::{file, read};
+/// let text = b"format = 1\n[[entry]]\n[entry.settings]\nrate = 220\n";
+/// let problems = read::case(text, &|name| file::profile(name, None)).unwrap_err();
+/// assert_eq!(problems[0].message, "set rate of 220/min is above what is plausible, 4 to 60/min");
+/// assert_eq!(problems[0].span, Some(45..48));
+/// ```
 pub fn case(bytes: &[u8], profiles: Profiles<'_>) -> Result<(Record, Spans), Vec<Problem>> {
     let Typed { draft, spans } = draft(bytes, profiles)?;
     match Record::check(draft) {
@@ -79,13 +90,13 @@ pub fn draft(bytes: &[u8], profiles: Profiles<'_>) -> Result<Typed, Vec<Problem>
     let text = syntax::text(bytes).map_err(|problem| vec![problem])?;
     let (table, slips) = syntax::table(text);
     let mut walk = Walk::default();
-    if slips.is_empty() {
+    if slips.problems.is_empty() {
         walk.format(text, &table);
     }
     let whole = walk.whole(&table, profiles);
     let Walk { mut problems, spans, unread } = walk;
-    if !slips.is_empty() {
-        return Err(beside_slips(text, slips, problems));
+    if !slips.problems.is_empty() {
+        return Err(beside_slips(slips, problems));
     }
     match whole {
         Some(draft) if problems.is_empty() => Ok(Typed { draft, spans }),
@@ -98,7 +109,7 @@ pub fn draft(bytes: &[u8], profiles: Profiles<'_>) -> Result<Typed, Vec<Problem>
     }
 }
 
-/// Reads one entry, to be added as entry `number`: its tables at the top of the text ("[settings]", "[gas]") or
+/// Reads one entry, to be added as entry `number`: its tables at the top of the text (`[settings]`, `[gas]`) or
 /// under one `[[entry]]`.
 ///
 /// # Errors
@@ -119,8 +130,8 @@ pub fn fragment(bytes: &[u8], number: usize) -> Result<(Entry, Spans), Vec<Probl
             None
         }
     };
-    if !slips.is_empty() {
-        return Err(beside_slips(text, slips, walk.problems));
+    if !slips.problems.is_empty() {
+        return Err(beside_slips(slips, walk.problems));
     }
     if walk.problems.is_empty() && table.is_empty() {
         let help = "write what is to be charted, for example [gas] and below it paco2 = 52";
@@ -139,15 +150,10 @@ fn in_order(mut problems: Vec<Problem>) -> Vec<Problem> {
 }
 
 /// Beside syntax errors: those, and what is wrong on other lines.
-fn beside_slips(text: &str, slips: Vec<Problem>, others: Vec<Problem>) -> Vec<Problem> {
-    let line = |problem: &Problem| problem.span.as_ref().map(|span| syntax::line_of(text, span.start));
-    let mut problems = slips;
-    for other in others {
-        if !problems.iter().any(|slip| line(slip) == line(&other)) {
-            problems.push(other);
-        }
-    }
-    in_order(problems)
+fn beside_slips(slips: Slips, others: Vec<Problem>) -> Vec<Problem> {
+    let hidden = |other: &Problem| other.span.as_ref().is_some_and(|span| slips.hide(span.start));
+    let seen: Vec<Problem> = others.into_iter().filter(|other| !hidden(other)).collect();
+    in_order(slips.problems.into_iter().chain(seen).collect())
 }
 
 impl Walk {

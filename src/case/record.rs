@@ -1,5 +1,7 @@
 //! A record: one patient's entries, checked as a whole. The engine takes nothing else.
 
+use std::collections::HashSet;
+
 use super::amend::{Corrected, corrected};
 use super::contradiction::contradictions;
 use super::entry::{Entry, Patient};
@@ -76,10 +78,9 @@ impl Record {
     /// from their absence alone is no fault of its own.
     pub(super) fn check_beside(draft: Draft, unread: &[Place]) -> Result<Self, Vec<Fault>> {
         let mut faults = implausible(&draft);
-        let mut doubtful: Vec<Place> = faults.iter().flat_map(|fault| fault.places.iter().copied()).collect();
-        doubtful.extend(unread);
+        let doubts = Doubts::of(faults.iter().flat_map(|fault| &fault.places).chain(unread));
         let (occasions, found) = standing(&draft);
-        faults.extend(found.into_iter().filter(|fault| !rests_on(fault, &doubtful)));
+        faults.extend(found.into_iter().filter(|fault| !doubts.touch(fault)));
         faults.sort_by_key(|fault| fault.places.first().and_then(|place| place.entry));
         if faults.is_empty() { Ok(Self { draft, occasions }) } else { Err(faults) }
     }
@@ -115,14 +116,27 @@ impl Record {
     }
 }
 
-/// Whether a fault draws on a value in doubt. Settings are inherited, so one in doubt casts doubt on all that follow.
-fn rests_on(fault: &Fault, doubtful: &[Place]) -> bool {
-    fault.places.iter().any(|place| {
-        doubtful.iter().any(|doubt| {
-            let same_key = (doubt.table, doubt.key) == (place.table, place.key);
-            same_key && (doubt.entry == place.entry || doubt.table == "settings")
+/// Values that are implausible or could not be read.
+struct Doubts {
+    places: HashSet<Place>,
+    /// Settings are inherited, so one in doubt casts doubt on all entries.
+    settings: HashSet<&'static str>,
+}
+
+impl Doubts {
+    fn of<'p>(places: impl Iterator<Item = &'p Place>) -> Self {
+        let places: HashSet<Place> = places.copied().collect();
+        let settings =
+            places.iter().filter(|place| place.table == "settings").map(|place| place.key).collect();
+        Self { places, settings }
+    }
+
+    /// Whether a fault draws on a value in doubt.
+    fn touch(&self, fault: &Fault) -> bool {
+        fault.places.iter().any(|place| {
+            self.places.contains(place) || (place.table == "settings" && self.settings.contains(place.key))
         })
-    })
+    }
 }
 
 /// The entries that count with the settings in force, and every fault between values.
@@ -135,16 +149,15 @@ fn standing(draft: &Draft) -> (Vec<Occasion>, Vec<Fault>) {
     // Stable: entries of one instant keep the order of the file.
     corrected.sort_by_key(|held| held.entry.at);
     let mut carried = Carried::default();
+    let mut said = HashSet::new();
     let mut occasions = Vec::with_capacity(corrected.len());
     for held in corrected {
         faults.extend(carried.advance(&held.entry, |key| held.place("settings", key)));
         let in_force = carried.in_force();
-        for fault in contradictions(&held, &carried, &in_force) {
-            // Settings stay in force: what they alone contradict is said where it comes about, not in every entry after.
-            if !faults.contains(&fault) {
-                faults.push(fault);
-            }
-        }
+        // Settings stay in force: what they alone contradict is said where it comes about, not in every entry after.
+        let new =
+            contradictions(&held, &carried, &in_force).into_iter().filter(|fault| said.insert(fault.clone()));
+        faults.extend(new);
         let Corrected { number, entry, .. } = held;
         let at = entry.at;
         occasions.push(Occasion { number, entry, in_force, at });

@@ -27,7 +27,7 @@ pub const DEMONSTRATION: &str = "injured-lungs";
 
 type Answer = Result<Said, Said>;
 
-fn face(matches: &ArgMatches) -> Face {
+pub(super) fn face(matches: &ArgMatches) -> Face {
     let unit = match matches.get_one::<String>("units").map(String::as_str) {
         Some("kPa") => PressureUnit::KPa,
         _ => PressureUnit::MmHg,
@@ -161,7 +161,7 @@ fn painted(text: String, colour: bool) -> String {
 
 /// `tidewright check`.
 pub fn check(matches: &ArgMatches, colours: Colours) -> Answer {
-    let (mut files, mut drawn, mut lines) = (Vec::new(), String::new(), String::new());
+    let (mut files, mut drawn, mut lines) = (Vec::new(), String::new(), Vec::new());
     for name in matches.get_many::<String>("files").into_iter().flatten() {
         let bytes = bytes(name)?;
         let shown = read::as_shown(&bytes).into_owned();
@@ -170,7 +170,7 @@ pub fn check(matches: &ArgMatches, colours: Colours) -> Answer {
         let problems = problems_of(kind, name, &bytes);
         drawn.push_str(&complaint::draw(&problems, Some((path, &shown)), colours.err));
         if problems.is_empty() {
-            lines.push_str(&format!("{path}: nothing wrong\n"));
+            lines.push(format!("{path}: nothing wrong\n"));
         }
         files.push(CheckedFile::new(path, kind, &shown, &problems));
     }
@@ -178,7 +178,7 @@ pub fn check(matches: &ArgMatches, colours: Colours) -> Answer {
     if matches.get_flag("json") {
         return Ok(Said::answer(as_json(&Checked { files })?, status));
     }
-    Ok(Said { out: lines, err: drawn, status })
+    Ok(Said { out: lines.concat(), err: drawn, status })
 }
 
 /// What is wrong with a file, and whether the engine could start from it. A record without a gas, or under support, is no
@@ -243,12 +243,12 @@ fn listed(
 }
 
 /// `tidewright completions`.
-pub fn completions(matches: &ArgMatches) -> Answer {
+pub fn completions(matches: &ArgMatches) -> Said {
     let mut script = Vec::new();
     if let Some(shell) = matches.get_one::<clap_complete::Shell>("shell") {
         clap_complete::generate(*shell, &mut command(), "tidewright", &mut script);
     }
-    Ok(Said::answer(String::from_utf8_lossy(&script).into_owned(), Status::Done))
+    Said::answer(String::from_utf8_lossy(&script).into_owned(), Status::Done)
 }
 
 /// `tidewright manual`.

@@ -164,6 +164,20 @@ fn with_show(command: Command, what: &'static str) -> Command {
     )
 }
 
+fn review_command() -> Command {
+    Command::new("review")
+        .about("How forecasts did on a unit's own past gases, and the steadiness figures that fit them")
+        .arg(Arg::new("gases").value_name("GASES.csv").required(true).help("One row a gas, sorted by stay and time; - for standard input"))
+        .arg(Arg::new("within").long("within").value_name("hours").help("Forecast a gas only this soon after the one before [default: 12]"))
+        .arg(choice("as", &["summary", "rows"], "A summary [default], or a CSV line for each forecast"))
+        .arg(Arg::new("profile").long("profile").value_name("NAME").help("Review with the steadiness figures of this profile"))
+        .arg(choice("steadiness", &["usual", "settled"], "Review with these figures [default: usual]"))
+        .after_long_help(
+            "Columns, in any order; lines that begin with # are skipped:\n  needed: stay, hours or at, rate_set, vt_set (mL), pco2 (mmHg) or pco2_kpa\n  \
+             heard:  sex, height_cm or predicted_weight_kg, airway, rate_obs, vt_obs, apparatus_ml, ph\n\nExample:\n  tidewright review our-gases.csv --within 8",
+        )
+}
+
 /// The whole command line.
 pub fn command() -> Command {
     let everywhere = [
@@ -179,9 +193,16 @@ pub fn command() -> Command {
         .args_conflicts_with_subcommands(true)
         .subcommand_negates_reqs(true)
         .arg(case_argument().help("A case file or the name of a built-in case [default: the demonstration case]"))
+        .arg(
+            Arg::new("no_mouse")
+                .long("no-mouse")
+                .action(ArgAction::SetTrue)
+                .help("Leave the mouse to the terminal while the panel is open"),
+        )
         .args(everywhere.map(|arg| arg.global(true)))
         .subcommand(plan_command())
         .subcommand(forecast_command())
+        .subcommand(review_command())
         .subcommand(
             Command::new("check")
                 .about("Validate case and profile files")

@@ -31,6 +31,11 @@ pub fn given(matches: &ArgMatches) -> Vec<(&'static str, &'static str, String)> 
         .collect()
 }
 
+/// As a TOML basic string, which a JSON string is.
+fn quoted(text: &str) -> String {
+    serde_json::Value::from(text).to_string()
+}
+
 /// A record of one entry from the flags.
 ///
 /// # Errors
@@ -42,23 +47,23 @@ pub fn record(
 ) -> Result<Record, Vec<Problem>> {
     let mut tables: BTreeMap<&str, Vec<String>> = BTreeMap::new();
     for (table, key, text) in given(matches) {
-        let text = serde_json::to_string(&text).unwrap_or_default(); // a JSON string is a TOML basic string
-        tables.entry(header(table)).or_default().push(format!("{key} = {text}"));
+        tables.entry(header(table)).or_default().push(format!("{key} = {}", quoted(&text)));
     }
-    let mut case = String::from("format = 1\n");
-    if let Some(profile) = profile {
-        case.push_str(&format!("profile = {}\n", serde_json::to_string(profile).unwrap_or_default()));
-    }
+    let mut case = vec!["format = 1".to_owned()];
+    case.extend(profile.map(|name| format!("profile = {}", quoted(name))));
     if steadiness == Some(Steadiness::Settled) {
-        case.push_str("steadiness = \"settled\"\n");
+        case.push("steadiness = \"settled\"".to_owned());
     }
     if let Some(patient) = tables.remove("patient") {
-        case.push_str(&format!("[patient]\n{}\n", patient.join("\n")));
+        case.push("[patient]".to_owned());
+        case.extend(patient);
     }
-    case.push_str("[[entry]]\n");
+    case.push("[[entry]]".to_owned());
     for (table, keys) in tables {
-        case.push_str(&format!("[{table}]\n{}\n", keys.join("\n")));
+        case.push(format!("[{table}]"));
+        case.extend(keys);
     }
+    let case = case.join("\n");
     let read = read::case(case.as_bytes(), &|name| file::profile(name, None));
     read.map(|(record, _)| record).map_err(|problems| {
         problems.into_iter().map(|problem| Problem { span: None, also: Vec::new(), ..problem }).collect()

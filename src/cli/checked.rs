@@ -2,7 +2,7 @@
 
 use serde::Serialize;
 
-use crate::case::problem::{Problem, line_and_column};
+use crate::case::problem::{Lines, Problem};
 use crate::case::read::Kind;
 
 /// Every file that was checked.
@@ -41,8 +41,9 @@ pub struct CheckedError {
 impl CheckedFile {
     /// A file with its problems; `text` is the text as shown.
     pub fn new(path: &str, kind: Kind, text: &str, problems: &[Problem]) -> Self {
+        let lines = Lines::of(text);
         let errors = problems.iter().map(|problem| {
-            let place = problem.span.as_ref().map(|span| line_and_column(text, span.start));
+            let place = problem.span.as_ref().map(|span| lines.position(span.start));
             CheckedError {
                 line: place.map(|(line, _)| line),
                 column: place.map(|(_, column)| column),

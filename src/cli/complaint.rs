@@ -41,6 +41,9 @@ pub fn draw(problems: &[Problem], source: Option<(&str, &str)>, colour: bool) ->
         ));
         drawn.push('\n');
     }
+    // The renderer makes the usual control characters visible, but not these, the first of which begins an escape
+    // sequence on some terminals (U+009B).
+    let mut drawn = drawn.replace(|letter| matches!(letter, '\u{80}'..='\u{9F}'), "\u{FFFD}");
     let kept = drawn.trim_end().len();
     drawn.truncate(kept);
     if !drawn.is_empty() {
@@ -99,6 +102,22 @@ mod tests {
     #[test]
     fn nothing_wrong_draws_nothing() {
         assert_eq!(draw(&[], None, false), "");
+    }
+
+    #[test]
+    fn eight_bit_control_characters_never_reach_the_terminal() {
+        let text = "label = \"\u{9b}2J\u{85}\"\n";
+        let drawn =
+            draw(&[Problem::at(0..5, "a \u{9b} in words", "mend it")], Some(("bed.toml", text)), false);
+        assert!(!drawn.contains(['\u{9b}', '\u{85}']) && drawn.contains('\u{FFFD}'));
+    }
+
+    #[test]
+    fn colour_is_only_drawn_when_asked_for() {
+        let problem = [Problem::at(0..1, "too fast", "write rate = 22")];
+        let source = Some(("bed.toml", "b = 220\n"));
+        assert!(draw(&problem, source, true).contains("\u{1b}["));
+        assert!(!draw(&problem, source, false).contains('\u{1b}'));
     }
 
     #[test]

@@ -24,6 +24,8 @@ pub struct Column<'a> {
     pub moved: Moved,
     /// True where trapping rests on an assumed resistance.
     pub trapping_assumed: bool,
+    /// True where CO2 output, and so useful and wasted ventilation, is only estimated.
+    pub output_estimated: bool,
 }
 
 /// Which dialled value a plan moved.
@@ -43,7 +45,8 @@ pub enum Moved {
 pub fn row(name: &str, cells: impl Iterator<Item = String>) -> String {
     let mut line = format!("{name:<NAME$}");
     for cell in cells {
-        line.push_str(&format!("{cell:>COLUMN$}"));
+        line.push_str(&" ".repeat(COLUMN.saturating_sub(cell.chars().count())));
+        line.push_str(&cell);
     }
     line.trim_end().to_owned()
 }
@@ -134,9 +137,15 @@ fn breath(columns: &[Column<'_>], face: Face, rows: &mut Vec<String>) {
         "minute volume, L/min",
         columns.iter().map(|c| flow(Some(c.outcome.state.minute_ventilation_l_min))),
     ));
-    rows.push(row("  useful", columns.iter().map(|c| flow(c.outcome.state.alveolar_ventilation_l_min))));
+    let estimated = columns.iter().any(|column| column.output_estimated);
+    let [useful, wasted] = if estimated {
+        ["  useful, estimated", "  wasted, estimated (share)"]
+    } else {
+        ["  useful", "  wasted (share of a breath)"]
+    };
+    rows.push(row(useful, columns.iter().map(|c| flow(c.outcome.state.alveolar_ventilation_l_min))));
     rows.push(row(
-        "  wasted (share of a breath)",
+        wasted,
         columns.iter().map(|c| {
             let state = &c.outcome.state;
             state.dead_space_loss_l_min.zip(state.dead_space_fraction).map_or_else(

@@ -21,9 +21,9 @@ pub fn drawing(course: &Course, face: Face) -> String {
     let row: String = (0..COLUMNS)
         .filter_map(|column| {
             let share = if high - low > 1e-9 { (at(column) - low) / (high - low) } else { 0.5 };
-            // Rounded to one of eight heights; the share lies between 0 and 1.
-            let height = (share * 7.0).round().clamp(0.0, 7.0) as usize;
-            glyphs.get(height).copied()
+            (1..8).zip(glyphs.iter().skip(1)).fold(glyphs.first(), |reached, (height, glyph)| {
+                if share * 7.0 >= f64::from(height) - 0.5 { Some(glyph) } else { reached }
+            })
         })
         .collect();
     let end = |mmhg: f64| face.value(mmhg, Dimension::GasPressure);

@@ -5,6 +5,7 @@ use super::face::Face;
 use super::plan_text::{cautions, finish};
 use super::{SAFETY, course_line, patient_lines};
 use crate::case::record::Record;
+use crate::planning::baseline::gas_exchange::Co2Evidence;
 use crate::planning::baseline::mechanics::TrappingEvidence;
 use crate::planning::plan::Forecast;
 use crate::quantity::unit::Dimension;
@@ -15,12 +16,14 @@ pub fn of(forecast: &Forecast, record: &Record, face: Face) -> String {
     lines.extend(patient_lines::gas(record, &forecast.baseline, face));
     lines.push(String::new());
     let trapping_assumed = forecast.baseline.trapping_evidence == TrappingEvidence::Assumed;
+    let output_estimated = forecast.baseline.co2_evidence == Co2Evidence::Estimated;
     let now = Column {
         title: forecast.now.paco2_is.replace("measured", "now").replace("forecast", "now (fcst)"),
         settings: &forecast.now.settings,
         outcome: &forecast.now.outcome,
         moved: Moved::Nothing,
         trapping_assumed,
+        output_estimated,
     };
     let trial = Column {
         title: "try".to_owned(),
@@ -28,6 +31,7 @@ pub fn of(forecast: &Forecast, record: &Record, face: Face) -> String {
         outcome: &forecast.trial,
         moved: Moved::Nothing,
         trapping_assumed,
+        output_estimated,
     };
     lines.extend(table(&[now, trial], face));
     if let Some(course) = &forecast.course {

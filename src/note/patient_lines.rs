@@ -13,6 +13,9 @@ const HYPOVENTILATION_ABOVE_MMHG: f64 = 45.0;
 /// PaCO2 below this is hyperventilation for the CO2 made, mmHg: common practice.
 const HYPERVENTILATION_BELOW_MMHG: f64 = 35.0;
 
+/// Normal arterial pH: common practice.
+const NORMAL_PH: [f64; 2] = [7.35, 7.45];
+
 /// "Bed 3 · female 158 cm, 50.6 kg predicted, tube · lung-protective"
 pub fn patient(record: &Record, predicted_weight_kg: Option<f64>, face: Face) -> String {
     let mut parts = Vec::new();
@@ -45,7 +48,7 @@ pub fn patient(record: &Record, predicted_weight_kg: Option<f64>, face: Face) ->
     );
     parts.push(body.join(", "));
     parts.push(record.profile().name.clone());
-    parts.join(face.dot())
+    face.wrapped(&parts.join(face.dot()), "", "  ")
 }
 
 /// The latest gas in one line, and what its PaCO2 means.
@@ -80,14 +83,22 @@ pub fn gas(record: &Record, baseline: &BaselineReport, face: Face) -> Vec<String
     } else if paco2 < HYPERVENTILATION_BELOW_MMHG {
         format!("Hyperventilation for the CO2 made: PaCO2 below {}.", bound(HYPERVENTILATION_BELOW_MMHG))
     } else {
-        format!(
-            "PaCO2 within {}{}{}: ventilation fits the CO2 made.",
+        let band = format!(
+            "{}{}{}",
             face.value(HYPERVENTILATION_BELOW_MMHG, Dimension::GasPressure),
             face.dash(),
             bound(HYPOVENTILATION_ABOVE_MMHG)
-        )
+        );
+        let [low, high] = NORMAL_PH;
+        match gas.ph {
+            Some(ph) if !(low..=high).contains(&ph) => format!(
+                "PaCO2 within {band}, yet pH {}: the bicarbonate explains it, acute or as this patient's habit.",
+                face.value(ph, Dimension::Ph)
+            ),
+            _ => format!("PaCO2 within {band}: ventilation fits the CO2 made."),
+        }
     };
-    vec![parts.join(face.dot()), meaning]
+    vec![face.wrapped(&parts.join(face.dot()), "", "  "), face.wrapped(&meaning, "", "  ")]
 }
 
 /// Where the numbers come from, one line each.

@@ -4,6 +4,7 @@ use super::columns::{Column, Moved, table};
 use super::face::{Face, ascii};
 use super::{SAFETY, course_line, patient_lines};
 use crate::case::record::Record;
+use crate::planning::baseline::gas_exchange::Co2Evidence;
 use crate::planning::baseline::mechanics::TrappingEvidence;
 use crate::planning::caution::Caution;
 use crate::planning::levers::Lever;
@@ -76,12 +77,13 @@ fn goal(plan: &Plan, record: &Record, face: Face) -> String {
             let [low, high] = target.band_mmhg;
             let there =
                 if target.met_by(plan.now.outcome.state.paco2_mmhg) { "already inside: " } else { "" };
-            format!(
+            let goal = format!(
                 "Goal PaCO2 {paco2}{ph}, {there}the band of {} is {} {}.",
                 record.profile().name,
                 face.gas_range(Some(low), Some(high)),
                 face.unit.word()
-            )
+            );
+            face.wrapped(&goal, "", "  ")
         }
         "ph" => format!("Goal pH {}, which is a PaCO2 of {paco2}.", face.known(target.ph, Dimension::Ph)),
         _ => format!("Goal PaCO2 {paco2}{ph}."),
@@ -90,12 +92,14 @@ fn goal(plan: &Plan, record: &Record, face: Face) -> String {
 
 fn columns(plan: &Plan) -> Vec<Column<'_>> {
     let trapping_assumed = plan.baseline.trapping_evidence == TrappingEvidence::Assumed;
+    let output_estimated = plan.baseline.co2_evidence == Co2Evidence::Estimated;
     let now = Column {
         title: plan.now.paco2_is.replace("measured", "now").replace("forecast", "now (fcst)"),
         settings: &plan.now.settings,
         outcome: &plan.now.outcome,
         moved: Moved::Nothing,
         trapping_assumed,
+        output_estimated,
     };
     let plans = plan.plans.iter().map(|line| Column {
         title: name_of(line.aim).to_owned(),
@@ -107,6 +111,7 @@ fn columns(plan: &Plan) -> Vec<Column<'_>> {
             _ => Moved::Both,
         },
         trapping_assumed,
+        output_estimated,
     });
     std::iter::once(now).chain(plans).collect()
 }
@@ -137,7 +142,7 @@ fn verdict(line: &PlanLine, face: Face) -> String {
     let goal =
         if line.on_target { "on the goal" } else { "NOT on the goal, the nearest that can be dialled" };
     let exact = line.exact.map_or_else(String::new, |exact| {
-        let digits = if exact < 100.0 { 1 } else { 0 };
+        let digits = usize::from(exact < 100.0);
         format!(" (exactly {exact:.digits$})")
     });
     let blocked = if line.blocked_by.is_empty() {
@@ -173,15 +178,16 @@ fn lever(lever: &Lever, face: Face) -> String {
     // A tenth of a mmHg tells the levers apart; the forecast itself is not that sharp.
     let tenth = face.unit.from_mmhg(paco2);
     let digits = face.unit.digits() + 1;
-    let mut line = format!("  {step:<31} PaCO2 {tenth:+.digits$} {}", face.unit.word());
-    if let Some(ph) = lever.ph_change {
-        line.push_str(&format!(", pH {ph:+.2}"));
-    }
-    if let Some(driving) = lever.driving_pressure_change_cmh2o {
-        line.push_str(&format!(", driving {driving:+.1}"));
-    }
-    if let Some(power) = lever.mechanical_power_change_j_min {
-        line.push_str(&format!(", power {power:+.1}"));
-    }
-    line
+    // A change that rounds to nothing is left out.
+    let told = |name: &str, change: Option<f64>, digits: usize| {
+        let text = format!("{:+.digits$}", change?);
+        text.contains(|digit: char| matches!(digit, '1'..='9')).then(|| format!("{name} {text}"))
+    };
+    let buys = [
+        Some(format!("  {step:<31} PaCO2 {tenth:+.digits$} {}", face.unit.word())),
+        told("pH", lever.ph_change, 2),
+        told("driving", lever.driving_pressure_change_cmh2o, 1),
+        told("power", lever.mechanical_power_change_j_min, 1),
+    ];
+    buys.into_iter().flatten().collect::<Vec<_>>().join(", ")
 }

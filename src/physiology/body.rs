@@ -16,7 +16,7 @@ pub const HEIGHT_RANGE_CM: [f64; 2] = [130.0, 220.0];
 pub fn predicted_weight_kg(female: bool, height_cm: f64) -> Option<f64> {
     let [low, high] = HEIGHT_RANGE_CM;
     let base = if female { FEMALE_KG } else { MALE_KG };
-    (low..=high).contains(&height_cm).then(|| base + KG_PER_CM * (height_cm - REFERENCE_CM))
+    (low..=high).contains(&height_cm).then_some(base + KG_PER_CM * (height_cm - REFERENCE_CM))
 }
 
 /// Ventilatory ratio: `VE·PaCO2/(PBW·100·37.5)`, minute volume in mL/min, PaCO2 in mmHg. About 1 in health.

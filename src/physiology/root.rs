@@ -16,7 +16,7 @@ pub fn crossing(f: impl Fn(f64) -> f64, low: f64, high: f64) -> Option<f64> {
     if fb == 0.0 {
         return Some(b);
     }
-    if !(fa * fb < 0.0) {
+    if fa.signum() * fb.signum() > 0.0 || fa.is_nan() || fb.is_nan() {
         return None;
     }
     let (mut c, mut fc) = (a, fa);
@@ -38,7 +38,8 @@ pub fn crossing(f: impl Fn(f64) -> f64, low: f64, high: f64) -> Option<f64> {
         }
         if previous.abs() >= tolerance && fa.abs() > fb.abs() {
             let s = fb / fa;
-            let (mut p, mut q) = if a == c {
+            // Only two distinct points are known after a bisection.
+            let (mut p, mut q) = if (a - c).abs() <= 0.0 {
                 (2.0 * half * s, 1.0 - s)
             } else {
                 let (q, r) = (fa / fc, fb / fc);

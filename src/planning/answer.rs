@@ -57,7 +57,7 @@ impl BaselineReport {
         let tidal = gas.tidal_volume_ml;
         let series = forecaster.series_ml();
         let fraction = forecaster.alveolar_fraction();
-        let expiratory = baseline.mechanics.expiratory().map(|(value, _)| value);
+        let expiratory = baseline.mechanics.expiratory_report();
         Self {
             predicted_weight_kg: baseline.predicted_weight_kg,
             co2_production_ml_min: forecaster.co2_output_ml_min(),

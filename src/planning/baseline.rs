@@ -95,11 +95,12 @@ impl Baseline {
         let drawn = latest_gas(occasions)?;
         let now_is_measured = unchanged_since(occasions, drawn.index);
         let set_rate = drawn.settings.rate_per_min;
-        let rate_per_min = if now_is_measured {
-            mechanics.effective_rate(set_rate)
-        } else {
-            rate_of(&mechanics, drawn.index).unwrap_or(set_rate)
-        };
+        // Unchanged settings must give the measured PaCO2 back, so a gas drawn under the settings in force now is read with
+        // the patient's own rate as known now; so is one before which no total rate was charted.
+        let then = mechanics.delivered.get(drawn.index).copied().flatten();
+        let rate_per_min = then
+            .filter(|then| then.total_known && !now_is_measured)
+            .map_or_else(|| mechanics.effective_rate(set_rate), |then| then.rate_per_min);
         let tidal_volume_ml = volume_of(&mechanics, drawn.settings, rate_per_min)
             .ok_or_else(|| vec![pressure_control_unread(drawn.occasion.number)])?;
         let measured = &drawn.occasion.entry.measured;
@@ -261,8 +262,12 @@ fn unchanged_since(occasions: &[Occasion], index: usize) -> bool {
     later.all(|in_force| in_force == at_gas)
 }
 
-fn rate_of(mechanics: &Mechanics, index: usize) -> Option<f64> {
-    mechanics.rates_per_min.get(index).copied().flatten()
+/// Effective rate, 1/min, and tidal volume, mL, of an occasion: in pressure control the volume read on it, where one was.
+fn delivered(mechanics: &Mechanics, index: usize, settings: &Settings) -> Option<(f64, f64)> {
+    let delivered = mechanics.delivered.get(index).copied().flatten()?;
+    let rate = delivered.rate_per_min;
+    let volume = delivered.pressure_volume_ml.or_else(|| volume_of(mechanics, settings, rate))?;
+    Some((rate, volume))
 }
 
 /// Effective tidal volume, mL, of settings with the leak and the lung finally in force.
@@ -313,8 +318,7 @@ fn heard_gases(occasions: &[Occasion], mechanics: &Mechanics, latest: &GasBreath
         .iter()
         .filter_map(|&(index, occasion, paco2_mmhg)| {
             let settings = occasion.in_force.mandatory()?;
-            let rate_per_min = rate_of(mechanics, index)?;
-            let tidal_volume_ml = volume_of(mechanics, settings, rate_per_min)?;
+            let (rate_per_min, tidal_volume_ml) = delivered(mechanics, index, settings)?;
             let drawn_at = occasion.drawn_at();
             Some(HeardGas {
                 hours: drawn_at.zip(first).map_or(0.0, |(at, first)| at.hours_since(first)),

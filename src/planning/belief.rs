@@ -61,6 +61,25 @@ pub struct Belief {
     variance: f64,
     figures: Figures,
     gases: usize,
+    rooms: LogRooms,
+}
+
+/// ln(room − airway) at every grid point for one room, kept since most breaths of a record leave the same room.
+#[derive(Debug, Clone, PartialEq)]
+struct LogRooms {
+    room_ml: f64,
+    ln: Vec<f64>,
+}
+
+impl LogRooms {
+    /// Every airway of the grid is below every room heard, so the logarithms are finite.
+    fn of(room_ml: f64, airway_ml: &[f64]) -> Self {
+        Self { room_ml, ln: airway_ml.iter().map(|airway| libm::log(room_ml - airway)).collect() }
+    }
+
+    fn is_of(&self, room_ml: f64) -> bool {
+        (self.room_ml - room_ml).abs() <= 0.0
+    }
 }
 
 /// The breath a forecast is made for, with what adds doubt to it.
@@ -91,12 +110,9 @@ impl Belief {
             }
             SeriesEvidence::Measured | SeriesEvidence::CutToWhole => (airway.max(0.0), MEASURED_SPREAD_ML),
         };
-        // A breath that the dead space swallows whole says nothing that can be heard.
-        let gases: Vec<_> = baseline
-            .gases
-            .iter()
-            .filter(|gas| gas.tidal_volume_ml - gas.apparatus_ml - airway.max(0.0) > 0.0)
-            .collect();
+        // A breath that the apparatus swallows whole says nothing that can be heard.
+        let gases: Vec<_> =
+            baseline.gases.iter().filter(|gas| gas.tidal_volume_ml > gas.apparatus_ml).collect();
         let smallest =
             gases.iter().map(|gas| gas.tidal_volume_ml - gas.apparatus_ml).fold(f64::INFINITY, f64::min);
         let high = (mean + REACH * spread).min(LARGEST_SHARE * smallest);
@@ -115,9 +131,10 @@ impl Belief {
             variance: 0.0,
             figures,
             gases: gases.len(),
+            rooms: LogRooms { room_ml: f64::NAN, ln: Vec::new() },
         };
         let ventilation = |gas: &super::baseline::HeardGas| {
-            gas.rate_per_min * (gas.tidal_volume_ml - gas.apparatus_ml - airway)
+            gas.rate_per_min * passing_ml(gas.tidal_volume_ml, gas.apparatus_ml + airway)
         };
         for (i, gas) in gases.iter().enumerate() {
             let previous = i.checked_sub(1).and_then(|before| gases.get(before));
@@ -138,12 +155,15 @@ impl Belief {
 
     /// One Kalman step at every grid point; weights are kept as logarithms until the end.
     fn hear_one(&mut self, gas: &super::baseline::HeardGas, first: bool, noise: f64) {
-        let ln_paco2 = libm::log(gas.paco2_mmhg);
+        let ln_moved = libm::log(gas.paco2_mmhg * gas.rate_per_min);
         let room = gas.tidal_volume_ml - gas.apparatus_ml;
+        if !self.rooms.is_of(room) {
+            self.rooms = LogRooms::of(room, &self.airway_ml);
+        }
         let total = self.variance + noise;
         let gain = if first { 1.0 } else { self.variance / total };
-        for ((airway, x), weight) in self.airway_ml.iter().zip(&mut self.x).zip(&mut self.weight) {
-            let observed = ln_paco2 + libm::log(gas.rate_per_min * (room - airway));
+        for ((ln_room, x), weight) in self.rooms.ln.iter().zip(&mut self.x).zip(&mut self.weight) {
+            let observed = ln_moved + ln_room;
             let surprise = observed - *x;
             if !first {
                 *weight -= 0.5 * surprise * surprise / total;
@@ -182,17 +202,24 @@ impl Belief {
         let variance =
             self.variance + wander_per_hour * wander_per_hour + gas * gas + moved * moved + doubt * doubt;
         let room = ahead.tidal_volume_ml - ahead.apparatus_ml;
-        let points = self
-            .airway_ml
-            .iter()
-            .zip(&self.x)
-            .zip(&self.weight)
-            .filter(|((airway, _), _)| room > **airway)
-            .map(|((airway, x), weight)| {
-                (*weight, x + ahead.shift - libm::log(ahead.rate_per_min * (room - airway)))
-            });
+        let shift = ahead.shift - libm::log(ahead.rate_per_min);
+        let of_heard = self.rooms.is_of(room);
+        let grid = self.airway_ml.iter().zip(&self.rooms.ln).zip(&self.x).zip(&self.weight);
+        // A grid point that swallows the breath whole puts its mass at infinity.
+        let points = grid.filter(|(((airway, _), _), _)| room > **airway).map(
+            |(((airway, ln_heard), x), weight)| {
+                let ln_room = if of_heard { *ln_heard } else { libm::log(room - airway) };
+                (*weight, x + shift - ln_room)
+            },
+        );
         Mixture::new(points, variance.sqrt())
     }
+}
+
+/// What passes the series dead space of section 1, mL, for ratios of ventilation: at least 5 % of a breath, as the grid
+/// allows no more than 95 % of one to be dead space.
+pub fn passing_ml(tidal_volume_ml: f64, series_ml: f64) -> f64 {
+    (tidal_volume_ml - series_ml).max((1.0 - LARGEST_SHARE) * tidal_volume_ml)
 }
 
 /// Extra variance of a gas drawn before the preceding change had settled: `ln(1 + |missing|/final)²`.

@@ -3,7 +3,7 @@
 use serde::Serialize;
 
 use super::baseline::{Baseline, volume_of};
-use super::belief::{Ahead, Belief, Interval};
+use super::belief::{Ahead, Belief, Interval, passing_ml};
 use super::course::Course;
 use super::limits;
 use super::outcome::{Outcome, State};
@@ -355,11 +355,9 @@ impl<'a> Forecaster<'a> {
         let gas = &self.baseline.gas;
         // Ventilation ratios are taken throughout with the dead space of section 1, not the posterior one.
         let section_one = self.baseline.exchange.series_ml;
-        let before = gas.rate_per_min * (gas.tidal_volume_ml - section_one);
-        let ahead = rate * (tidal - section_one - (settings.apparatus_dead_space_ml - gas.apparatus_ml));
-        if ahead <= 0.0 {
-            return None;
-        }
+        let before = gas.rate_per_min * passing_ml(gas.tidal_volume_ml, section_one);
+        let apparatus_change = settings.apparatus_dead_space_ml - gas.apparatus_ml;
+        let ahead = rate * passing_ml(tidal, section_one + apparatus_change);
         let readings = self.held_readings(dialled);
         let held = self.arithmetic(self.reading(), settings, rate, tidal, dialled.co2_factor);
         let other = held.zip(readings.split).map_or(0.0, |(held, split)| libm::log(held / split));
@@ -378,7 +376,7 @@ impl<'a> Forecaster<'a> {
     pub fn outcome(&self, dialled: &Dialled, band_mmhg: Option<[f64; 2]>) -> Option<Outcome> {
         let state = self.state(dialled)?;
         let interval = self.interval(dialled, band_mmhg).unwrap_or_default();
-        Some(self.judge(state, interval))
+        Some(self.judge(&state, interval))
     }
 
     /// The outcome now: measured, without an interval, or forecast, with one.
@@ -388,7 +386,7 @@ impl<'a> Forecaster<'a> {
         } else {
             self.interval(&self.now(), band_mmhg).unwrap_or_default()
         };
-        Some(self.judge(self.state_now()?, interval))
+        Some(self.judge(&self.state_now()?, interval))
     }
 
     /// True where trapping rests on an assumed resistance.
@@ -396,9 +394,9 @@ impl<'a> Forecaster<'a> {
         self.baseline.mechanics.trapping_evidence() == super::baseline::mechanics::TrappingEvidence::Assumed
     }
 
-    fn judge(&self, state: State, interval: Interval) -> Outcome {
-        let limits = limits::verdicts(&self.baseline.profile.limits, &state, self.trapping_assumed());
-        Outcome { state, interval, limits }
+    fn judge(&self, state: &State, interval: Interval) -> Outcome {
+        let limits = limits::verdicts(&self.baseline.profile.limits, state, self.trapping_assumed());
+        Outcome { state: *state, interval, limits }
     }
 
     /// The band that counts as on target where no target was typed, mmHg.

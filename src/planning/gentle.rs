@@ -5,7 +5,7 @@ use std::cmp::Ordering;
 use crate::case::profile::{Limit, LimitId};
 
 use super::forecast::Forecaster;
-use super::limits;
+use super::limits::{self, Excess};
 use super::outcome::State;
 use super::solve::{settable_rates, settable_volumes, volume_step};
 use super::target::Target;
@@ -32,16 +32,16 @@ struct Pair {
     paco2_mmhg: f64,
     load: f64,
     steps_moved: f64,
-    /// How far each limit that excludes is exceeded; 0 when kept or unknown.
-    excess: Vec<f64>,
+    /// How far each limit that excludes is passed; not at all when kept or unknown.
+    excess: Vec<Excess>,
 }
 
 /// Every settable pair, ready to be chosen from.
 pub struct Pairs {
-    pairs: Vec<Pair>,
+    settable: Vec<Pair>,
     /// The limits that exclude.
     limits: Vec<LimitId>,
-    excess_now: Vec<f64>,
+    excess_now: Vec<Excess>,
     target: Target,
 }
 
@@ -85,11 +85,9 @@ impl Pairs {
         let profile = &forecaster.baseline().profile;
         let limits: Vec<&Limit> =
             profile.limits.iter().filter(|limit| excludes(limit.id, target.typed())).collect();
-        let excesses = |state: &State| -> Vec<f64> {
-            limits
-                .iter()
-                .map(|limit| limits::value(state, limit.id).map_or(0.0, |value| limits::excess(limit, value)))
-                .collect()
+        let excesses = |state: &State| -> Vec<Excess> {
+            let of = |limit: &&Limit| Some(limits::excess(limit, limits::value(state, limit.id)?));
+            limits.iter().map(|limit| of(limit).unwrap_or_default()).collect()
         };
         let volume_step = volume_step(base, &profile.steps);
         let mut pairs = Vec::new();
@@ -118,7 +116,7 @@ impl Pairs {
             return Err(NoGentle::LoadUnknown);
         }
         let limits = limits.iter().map(|limit| limit.id).collect();
-        Ok(Self { pairs, limits, excess_now: excesses(now), target })
+        Ok(Self { settable: pairs, limits, excess_now: excesses(now), target })
     }
 
     /// The limits that exclude.
@@ -133,20 +131,22 @@ impl Pairs {
     pub fn choose(&self, without: Option<LimitId>) -> Result<Chosen, NoGentle> {
         let counts: Vec<bool> = self.limits.iter().map(|id| Some(*id) != without).collect();
         let strict =
-            |pair: &&Pair| pair.excess.iter().zip(&counts).all(|(excess, counts)| !counts || *excess <= 0.0);
+            |pair: &&Pair| pair.excess.iter().zip(&counts).all(|(excess, counts)| !counts || excess.none());
         let allowed = |pair: &&Pair| {
-            pair.excess.iter().zip(&self.excess_now).zip(&counts).all(|((excess, now), counts)| {
-                !counts || *excess <= 0.0 || (*now > 0.0 && *excess <= now + TIE)
-            })
+            pair.excess
+                .iter()
+                .zip(&self.excess_now)
+                .zip(&counts)
+                .all(|((excess, now), counts)| !counts || excess.no_worse_than(*now))
         };
         let best = self
-            .gentlest(&self.pairs.iter().filter(strict).collect::<Vec<_>>())
-            .or_else(|| self.gentlest(&self.pairs.iter().filter(allowed).collect::<Vec<_>>()));
+            .gentlest(&self.settable.iter().filter(strict).collect::<Vec<_>>())
+            .or_else(|| self.gentlest(&self.settable.iter().filter(allowed).collect::<Vec<_>>()));
         if let Some(pair) = best {
             return Ok(Chosen { dialled: pair.dialled, on_target: true, miss_mmhg: 0.0 });
         }
         let miss = |pair: &Pair| (pair.paco2_mmhg - self.target.paco2_mmhg).abs();
-        self.pairs
+        self.settable
             .iter()
             .filter(allowed)
             .min_by(|a, b| {

@@ -78,18 +78,41 @@ pub fn value(state: &State, id: LimitId) -> Option<f64> {
     }
 }
 
-/// How far a value lies outside its bounds, 0 when inside.
-pub fn excess(limit: &Limit, value: f64) -> f64 {
-    let over = limit.max.map_or(0.0, |max| value - max);
-    let under = limit.min.map_or(0.0, |min| min - value);
-    let excess = over.max(under);
-    if excess > BEYOND_BY_MORE_THAN { excess } else { 0.0 }
+/// How far a value lies outside each bound, 0 where it is inside.
+#[derive(Debug, Clone, Copy, Default, PartialEq)]
+pub struct Excess {
+    /// Above the upper bound.
+    pub over: f64,
+    /// Below the lower bound.
+    pub under: f64,
+}
+
+impl Excess {
+    /// True when neither bound is passed.
+    pub fn none(self) -> bool {
+        self.over <= 0.0 && self.under <= 0.0
+    }
+
+    /// True when neither bound is passed further than in `now`, nor one that is kept there.
+    pub fn no_worse_than(self, now: Self) -> bool {
+        let side = |here: f64, now: f64| here <= 0.0 || (now > 0.0 && here <= now + BEYOND_BY_MORE_THAN);
+        side(self.over, now.over) && side(self.under, now.under)
+    }
+}
+
+/// How far a value lies outside its bounds.
+pub fn excess(limit: &Limit, value: f64) -> Excess {
+    let beyond = |by: f64| if by > BEYOND_BY_MORE_THAN { by } else { 0.0 };
+    Excess {
+        over: limit.max.map_or(0.0, |max| beyond(value - max)),
+        under: limit.min.map_or(0.0, |min| beyond(min - value)),
+    }
 }
 
 /// The verdict on a value; `at_least` marks one that is only a lower bound of the harm, which can be beyond but not within.
 pub fn verdict(limit: &Limit, value: Option<f64>, at_least: bool) -> Verdict {
     let Some(value) = value else { return Verdict::Unknown };
-    if excess(limit, value) > 0.0 {
+    if !excess(limit, value).none() {
         return Verdict::Beyond;
     }
     if at_least {

@@ -34,9 +34,12 @@ const SCAN: usize = 400;
 
 /// The whole multiples of `step` within `range`.
 fn multiples(step: f64, [low, high]: [f64; 2]) -> impl Iterator<Item = f64> {
-    let first = (low / step - 1e-9).ceil() as i64;
-    let last = (high / step + 1e-9).floor() as i64;
-    (first..=last).map(move |n| n as f64 * step)
+    let first = (low / step - 1e-9).ceil();
+    let count = (high / step + 1e-9).floor() - first;
+    // Whole numbers far below 2^52, so each is exact.
+    std::iter::successors(Some(0.0), |n| Some(n + 1.0))
+        .take_while(move |n| *n <= count)
+        .map(move |n| (first + n) * step)
 }
 
 /// The rates that can be dialled, 1/min.

@@ -61,12 +61,14 @@ pub struct Dialled {
 
 impl Dialled {
     /// The same patient with another set rate.
+    #[must_use]
     pub const fn with_rate(mut self, rate_per_min: f64) -> Self {
         self.settings.rate_per_min = rate_per_min;
         self
     }
 
     /// The same patient with another volume (mL) or inspiratory pressure (cmH2O), whichever is controlled.
+    #[must_use]
     pub const fn with_volume(mut self, value: f64) -> Self {
         self.settings.inflation = match self.settings.inflation {
             Inflation::Volume { pause_s, flow_pattern, .. } => {
@@ -124,8 +126,8 @@ impl Trial {
                     "Try control volume or pressure.",
                 ));
             }
-            (Control::Volume, Control::Pressure) => self.to_pressure(&dialled, forecaster)?,
-            (Control::Pressure, Control::Volume) => self.to_volume(dialled.settings, forecaster)?,
+            (Control::Volume, Control::Pressure) => self.in_pressure_control(&dialled, forecaster)?,
+            (Control::Pressure, Control::Volume) => self.in_volume_control(dialled.settings, forecaster)?,
             _ => self.same_control(dialled.settings)?,
         };
         dialled.settings = settings;
@@ -200,7 +202,7 @@ impl Trial {
 
     /// Volume to pressure control: the pressure given, or the one that moves the same volume at the trial's rate and
     /// timing. A held flow becomes its inspiratory time; pause and flow pattern end.
-    fn to_pressure(&self, dialled: &Dialled, forecaster: &Forecaster<'_>) -> Result<Settings, Fault> {
+    fn in_pressure_control(&self, dialled: &Dialled, forecaster: &Forecaster<'_>) -> Result<Settings, Fault> {
         let mut settings = dialled.settings;
         only_volume_control(self.timing, self.pause_s)?;
         if self.tidal_volume_ml.is_some() {
@@ -231,7 +233,11 @@ impl Trial {
     }
 
     /// Pressure to volume control: the volume given, or the one the patient gets now.
-    fn to_volume(&self, mut settings: Settings, forecaster: &Forecaster<'_>) -> Result<Settings, Fault> {
+    fn in_volume_control(
+        &self,
+        mut settings: Settings,
+        forecaster: &Forecaster<'_>,
+    ) -> Result<Settings, Fault> {
         if self.inspiratory_pressure_cmh2o.is_some() {
             return Err(wrong_control("inspiratory_pressure", "volume", "--tidal-volume"));
         }

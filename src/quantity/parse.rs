@@ -70,7 +70,7 @@ impl fmt::Display for Unread {
     fn fmt(&self, out: &mut fmt::Formatter<'_>) -> fmt::Result {
         match self {
             Self::Empty => write!(out, "there is no number here"),
-            Self::NoNumber(text) => write!(out, "\"{text}\" is not a number"),
+            Self::NoNumber(text) => write!(out, "\"{}\" is not a number", fit(text)),
             Self::Comma { text, whole, decimal } => {
                 write!(
                     out,
@@ -78,20 +78,29 @@ impl fmt::Display for Unread {
                 )
             }
             Self::Unknown { unit, dimension } => {
-                write!(out, "\"{unit}\" is not a unit of {}", bare(*dimension))
+                write!(out, "\"{}\" is not a unit of {}", fit(unit), bare(*dimension))
             }
             Self::Foreign { unit, measures, dimension } => {
                 write!(out, "\"{unit}\" is a unit of {}, and this is {}", bare(*measures), dimension.words())
             }
             Self::NoRatio(text) => {
-                write!(out, "\"{text}\" does not say which part is inspiration and which is expiration")
+                write!(
+                    out,
+                    "\"{}\" does not say which part is inspiration and which is expiration",
+                    fit(text)
+                )
             }
-            Self::Inches(text) => write!(out, "\"{text}\" has 12 inches or more beside the feet"),
+            Self::Inches(text) => write!(out, "\"{}\" has 12 inches or more beside the feet", fit(text)),
         }
     }
 }
 
 impl std::error::Error for Unread {}
+
+/// Typed text fit to stand in a sentence: short, without control characters.
+fn fit(text: &str) -> String {
+    text.chars().take(40).map(|letter| if letter.is_control() { '�' } else { letter }).collect()
+}
 
 fn bare(dimension: Dimension) -> &'static str {
     let words = dimension.words();

@@ -99,8 +99,7 @@ impl Walk {
         let Some(table) = self.table(Place::in_entry(number, name, ""), value, header(name)) else { return };
         self.fill(entry, &ENTRY, table, (name, Some(number)), |walk, entry, key, value| match (name, key) {
             ("settings", "control") => {
-                entry.settings.control =
-                    walk.word(Place::in_entry(number, name, "control"), value, &CONTROLS);
+                entry.settings.control = walk.control(Place::in_entry(number, name, "control"), value);
                 true
             }
             ("settings", "flow_pattern") => {
@@ -114,6 +113,17 @@ impl Walk {
             }
             _ => false,
         });
+    }
+
+    fn control(&mut self, place: Place, value: &Value<'_>) -> Option<Control> {
+        let before = self.problems.len();
+        let control = self.word(place, value, &CONTROLS);
+        for problem in self.problems.iter_mut().skip(before) {
+            problem.help.push_str(
+                "; a volume-targeted mode with a falling flow is \"volume\" with flow_pattern = \"decelerating\"",
+            );
+        }
+        control
     }
 
     /// Under the entry itself or, as the note that explains it ends, under its note.

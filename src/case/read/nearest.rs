@@ -1,7 +1,7 @@
 //! The known key that a mistyped one was probably meant to be.
 
 /// What people call things elsewhere, and the key here. The trade's own abbreviations.
-const OTHER_NAMES: [(&str, &str); 37] = [
+const OTHER_NAMES: [(&str, &str); 51] = [
     ("rr", "rate"),
     ("f", "rate"),
     ("frequency", "rate"),
@@ -39,16 +39,30 @@ const OTHER_NAMES: [(&str, &str); 37] = [
     ("p01", "occlusion_pressure"),
     ("mip", "inspiratory_pressure_max"),
     ("entries", "entry"),
+    ("f", "female"),
+    ("w", "female"),
+    ("woman", "female"),
+    ("m", "male"),
+    ("man", "male"),
+    ("vc", "volume"),
+    ("vcv", "volume"),
+    ("pc", "pressure"),
+    ("pcv", "pressure"),
+    ("ps", "support"),
+    ("psv", "support"),
+    ("ett", "tube"),
+    ("trach", "tracheostomy"),
+    ("square", "constant"),
 ];
 
 /// How alike two spellings must be, from 0 to 1, to be offered; chosen so that one slip in a short word passes.
-const ALIKE: f64 = 0.65;
+const ALIKE: f64 = 0.6;
 
-/// The known key nearest to `typed`, when one is near.
-pub(super) fn nearest<'k>(typed: &str, known: &[&'k str]) -> Option<&'k str> {
+/// The known word nearest to `typed`, when one is near: a slip of the hand, or another name of the trade.
+pub fn nearest<'k>(typed: &str, known: &[&'k str]) -> Option<&'k str> {
     let typed = typed.to_lowercase().replace([' ', '-'], "_");
-    let other = OTHER_NAMES.iter().find(|(name, _)| *name == typed).map(|(_, key)| *key);
-    if let Some(found) = known.iter().find(|key| Some(**key) == other || **key == typed) {
+    let other = |key: &str| OTHER_NAMES.iter().any(|(name, meant)| *name == typed && *meant == key);
+    if let Some(found) = known.iter().find(|key| **key == typed || other(key)) {
         return Some(found);
     }
     known

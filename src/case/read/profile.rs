@@ -22,12 +22,12 @@ pub fn profile(bytes: &[u8]) -> Result<Profile, Vec<Problem>> {
     let text = syntax::text(bytes).map_err(|problem| vec![problem])?;
     let (table, slips) = syntax::table(text);
     let mut walk = Walk::default();
-    if slips.is_empty() {
+    if slips.problems.is_empty() {
         walk.format(text, &table);
     }
     let whole = walk.whole_profile(&table);
-    if !slips.is_empty() {
-        return Err(super::beside_slips(text, slips, walk.problems));
+    if !slips.problems.is_empty() {
+        return Err(super::beside_slips(slips, walk.problems));
     }
     match whole {
         Some(profile) if walk.problems.is_empty() => Ok(profile),
@@ -50,11 +50,31 @@ fn bound(id: LimitId, name: &'static str) -> Plausible {
         LimitId::Paco2 => (Dimension::GasPressure, [10.0, 150.0], "80"),
         LimitId::Paco2FallPerHour => (Dimension::PressurePerHour, [0.0, 140.0], "20"),
     };
-    Plausible { name, words: id.words(), dimension, min, max, digits: 2, example, weather: false }
+    Plausible {
+        name,
+        words: id.words(),
+        dimension,
+        min,
+        max,
+        digits: 2,
+        example,
+        weather: false,
+        as_flag: false,
+    }
 }
 
 fn figure(name: &'static str, words: &'static str, [min, max]: [f64; 2], example: &'static str) -> Plausible {
-    Plausible { name, words, dimension: Dimension::Number, min, max, digits: 3, example, weather: false }
+    Plausible {
+        name,
+        words,
+        dimension: Dimension::Number,
+        min,
+        max,
+        digits: 3,
+        example,
+        weather: false,
+        as_flag: false,
+    }
 }
 
 impl Walk {

@@ -8,8 +8,9 @@ use toml::de::{DeTable, DeValue};
 use super::nearest::nearest;
 use crate::case::fault::Place;
 use crate::case::problem::{Problem, Spans};
-use crate::quantity::input::{Plausible, Typed};
-use crate::quantity::parse;
+use crate::quantity::input::{OutOfRange, Plausible, Typed};
+use crate::quantity::parse::{self, Unread};
+use crate::quantity::show;
 use crate::quantity::unit::Dimension;
 
 /// A value and where it stands.
@@ -75,23 +76,14 @@ impl Walk {
     /// A quantity: a plain number or a string with its unit.
     pub(super) fn number(&mut self, input: &Plausible, place: Place, value: &Value<'_>) -> Option<f64> {
         self.spans.insert(place, value.span());
-        let example = format!("{} = {}", input.name, input.example);
+        let example = input.written(input.example);
         let (number, typed) = match value.get_ref() {
             DeValue::Integer(integer) if integer.radix() == 10 => (number_of(integer.as_str()), Typed::Plain),
             DeValue::Float(float) => (number_of(float.as_str()), Typed::Plain),
-            DeValue::String(text) => match parse::read(text, input.dimension) {
-                Ok(reading) => {
-                    let number = reading.number;
-                    (reading.value, reading.unit.map_or(Typed::Plain, |unit| Typed::With { number, unit }))
-                }
-                Err(unread) => {
-                    let message = format!("{}: {unread}", input.words);
-                    self.problem(
-                        place,
-                        value.span(),
-                        message,
-                        format!("{}; for example {example}", unread.help()),
-                    );
+            DeValue::String(text) => match text_to_number(input, text) {
+                Ok(read) => read,
+                Err(out) => {
+                    self.problem(place, value.span(), out.message, out.help);
                     return None;
                 }
             },
@@ -108,12 +100,13 @@ impl Walk {
         if input.dimension == Dimension::Ratio && !matches!(value.get_ref(), DeValue::String(_)) {
             let message =
                 format!("{} as a plain number could mean inspiration first or expiration first", input.words);
-            self.problem(
-                place,
-                value.span(),
-                message,
-                format!("write both parts, inspiration first: {example}"),
-            );
+            let help = if number.is_finite() && number > 0.0 {
+                let [one, other] = [number, 1.0 / number].map(show::ratio);
+                format!("write both parts, inspiration first: ratio = \"{one}\" or ratio = \"{other}\"")
+            } else {
+                format!("write both parts, inspiration first: {example}")
+            };
+            self.problem(place, value.span(), message, help);
             return None;
         }
         match input.accept(number, typed) {
@@ -129,12 +122,7 @@ impl Walk {
     pub(super) fn pair(&mut self, input: &Plausible, place: Place, value: &Value<'_>) -> Option<[f64; 2]> {
         self.spans.insert(place, value.span());
         let Some([first, second]) = value.get_ref().as_array().map(AsRef::as_ref) else {
-            self.kind(
-                place,
-                value,
-                "two numbers in brackets",
-                &format!("{} = {}", input.name, input.example),
-            );
+            self.kind(place, value, "two numbers in brackets", &input.written(input.example));
             return None;
         };
         let (low, high) = (self.number(input, place, first), self.number(input, place, second));
@@ -145,7 +133,7 @@ impl Walk {
                 place,
                 value.span(),
                 format!("{} runs from {} down to {}", input.words, input.shown(low), input.shown(high)),
-                format!("write the lower end first, for example {} = {}", input.name, input.example),
+                format!("write the lower end first, for example {}", input.written(input.example)),
             );
             return None;
         }
@@ -232,14 +220,30 @@ impl Walk {
         self.spans.insert(place, value.span());
         let table = value.get_ref().as_table();
         if table.is_none() {
-            let (wanted, example) = if value.get_ref().is_array() {
-                ("a table named once, with single brackets", header)
-            } else {
-                ("a table", header)
-            };
-            self.kind(place, value, wanted, example);
+            let found = kind_of(value.get_ref());
+            let message = format!("{header} must be a table, and this is {found}");
+            let help = format!("write {header} on a line of its own, with its keys below it");
+            self.problem(place, value.span(), message, help);
         }
         table
+    }
+}
+
+/// A quantity written as text, and how it was written.
+pub(in crate::case) fn text_to_number(input: &Plausible, text: &str) -> Result<(f64, Typed), OutOfRange> {
+    match parse::read(text, input.dimension) {
+        Ok(reading) => {
+            let number = reading.number;
+            Ok((reading.value, reading.unit.map_or(Typed::Plain, |unit| Typed::With { number, unit })))
+        }
+        Err(unread) => {
+            let help = match unread {
+                // Their help is an example already.
+                Unread::Comma { .. } | Unread::NoRatio(_) | Unread::Inches(_) => unread.help(),
+                _ => format!("{}; for example {}", unread.help(), input.written(input.example)),
+            };
+            Err(OutOfRange { message: format!("{}: {unread}", input.words), help })
+        }
     }
 }
 

@@ -156,7 +156,7 @@ fn broken(scene: &Scene<'_>, outcome: &crate::planning::outcome::State) -> Optio
         .limits
         .iter()
         .find(|limit| {
-            limits::value(outcome, limit.id).is_some_and(|value| limits::excess(limit, value) > 0.0)
+            limits::value(outcome, limit.id).is_some_and(|value| !limits::excess(limit, value).none())
         })
         .map(|limit| limit.id)
 }

@@ -115,7 +115,7 @@ pub fn inspiratory_resistance_from_hold(
 ) -> HoldResistance {
     let unfilled = (inspiratory_pressure - plateau_above_peep) / (inspiratory_pressure - auto_peep_cmh2o);
     let litres = compliance_ml_cmh2o / 1000.0;
-    if !(unfilled > UNFILLED_LIMIT && unfilled < 1.0) {
+    if unfilled <= UNFILLED_LIMIT || unfilled >= 1.0 {
         HoldResistance::Small(inspiratory_s / (FILLED_TIME_CONSTANTS * litres))
     } else {
         HoldResistance::Read(-inspiratory_s / (litres * libm::log(unfilled)))

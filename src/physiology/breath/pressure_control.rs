@@ -94,7 +94,7 @@ mod tests {
     use super::*;
 
     /// Marini & Crooke's closed form, numbers checked by integration outside this project:
-    /// ΔPi 18, I:E 1:2, RI 18, RE 25, C 60: rate 10 gives 856.6 mL and auto-PEEP 1.07; rate 20 gives 536.2 mL and 3.20.
+    /// `ΔPi` 18, I:E 1:2, RI 18, RE 25, C 60: rate 10 gives 856.6 mL and auto-PEEP 1.07; rate 20 gives 536.2 mL and 3.20.
     #[test]
     fn obstructed_lung_at_two_rates() {
         let lung = Lung {

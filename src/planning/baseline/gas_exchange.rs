@@ -146,7 +146,7 @@ impl Reading {
         Place::in_entry(self.number, "measured", key)
     }
 
-    /// VDphys, from VD/VT, mixed expired PCO2 or measured CO2 production.
+    /// `VDphys`, from VD/VT, mixed expired PCO2 or measured CO2 production.
     fn whole_dead_space(
         &self,
         measured: &Measured,

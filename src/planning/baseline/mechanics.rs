@@ -51,40 +51,84 @@ pub struct Mechanics {
     pub pressure_scale: Option<f64>,
     /// The total rate where the patient triggers, 1/min.
     pub trigger_rate_per_min: Option<f64>,
-    /// The effective rate of each occasion, 1/min; `None` without complete settings.
-    pub rates_per_min: Vec<Option<f64>>,
+    /// What each occasion delivered; `None` without complete settings.
+    pub delivered: Vec<Option<Delivered>>,
     measured_pressure_breath: Option<(PressureBreath, f64)>,
+    plateau_reading: Option<PlateauReading>,
+}
+
+/// What an occasion delivered.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Delivered {
+    /// Effective rate, 1/min, by the total charted with it or before it.
+    pub rate_per_min: f64,
+    /// Whether a total rate had been charted by then.
+    pub total_known: bool,
+    /// Volume read on this occasion in pressure control, mL.
+    pub pressure_volume_ml: Option<f64>,
+}
+
+/// A plateau read without total PEEP: its compliance hangs on the expiratory resistance finally in force.
+#[derive(Debug, Clone, Copy, PartialEq)]
+struct PlateauReading {
+    number: usize,
+    volume_ml: f64,
+    above_cmh2o: f64,
+    peep_cmh2o: f64,
+    expiratory_s: f64,
 }
 
 impl Mechanics {
+    /// A patient under volume control of whom only the delivered volume and the own rate are known.
+    pub const fn of_volume_control(volume_per_set: f64, trigger_rate_per_min: Option<f64>) -> Self {
+        Self {
+            compliance: None,
+            inspiratory_resistance: None,
+            expiratory_resistance: None,
+            trapping_unread: false,
+            volume_per_set,
+            pressure_scale: None,
+            trigger_rate_per_min,
+            delivered: Vec::new(),
+            measured_pressure_breath: None,
+            plateau_reading: None,
+        }
+    }
+
     /// Reads the occasions in order.
     ///
     /// # Errors
     /// Readings that contradict each other, each with its place.
     pub fn read(occasions: &[Occasion]) -> Result<(Self, Cautions), Vec<Fault>> {
-        let mut reading = Self {
-            compliance: None,
-            inspiratory_resistance: None,
-            expiratory_resistance: None,
-            trapping_unread: false,
-            volume_per_set: 1.0,
-            pressure_scale: None,
-            trigger_rate_per_min: None,
-            rates_per_min: Vec::with_capacity(occasions.len()),
-            measured_pressure_breath: None,
-        };
+        let mut reading = Self::of_volume_control(1.0, None);
+        let mut any_total = false;
         let (mut cautions, mut faults) = (Cautions::default(), Vec::new());
         for occasion in occasions {
             let Some(settings) = occasion.in_force.mandatory() else {
-                reading.rates_per_min.push(None);
+                reading.delivered.push(None);
                 continue;
             };
             let measured = &occasion.entry.measured;
             reading.read_rate(settings, measured);
-            reading.rates_per_min.push(Some(reading.effective_rate(settings.rate_per_min)));
+            any_total |= measured.total_rate_per_min.is_some();
+            let pressure_volume_ml = match (settings.inflation, measured.exhaled_tidal_volume_ml) {
+                (Inflation::Pressure { .. }, Some(exhaled)) => {
+                    Self::corrected_volume(occasion.number, exhaled, settings, measured).ok()
+                }
+                _ => None,
+            };
+            let rate_per_min = reading.effective_rate(settings.rate_per_min);
+            reading.delivered.push(Some(Delivered {
+                rate_per_min,
+                total_known: any_total,
+                pressure_volume_ml,
+            }));
             if let Err(fault) = reading.read_lung(occasion.number, settings, measured, &mut cautions) {
                 faults.push(fault);
             }
+        }
+        if let Err(fault) = reading.read_plateau_again(&mut cautions) {
+            faults.push(fault);
         }
         if faults.is_empty() {
             reading.scale_pressure_control();
@@ -122,10 +166,20 @@ impl Mechanics {
             .or_else(|| self.inspiratory_resistance.map(|value| (value, TrappingEvidence::Assumed)))
     }
 
+    /// Expiratory resistance to report, cmH2O·s/L: an assumption is made only once a compliance is known.
+    pub fn expiratory_report(&self) -> Option<f64> {
+        match self.compliance {
+            Some(_) => self.expiratory().map(|(value, _)| value),
+            None => self.expiratory_resistance.map(|(value, _)| value),
+        }
+    }
+
     /// Expiratory resistance, cmH2O·s/L, if the inspiratory one were `what_if`: it follows only where it is assumed.
     pub fn expiratory_if_resistance(&self, what_if: Option<f64>) -> Option<f64> {
+        // Where no resistance was known at all, one under trial makes trapping known too.
+        let crude = matches!(self.compliance, Some((_, Worth::Crude)));
         match self.expiratory_resistance {
-            _ if self.trapping_unread => None,
+            _ if self.trapping_unread && !(crude && what_if.is_some()) => None,
             Some((value, _)) => Some(value),
             None => what_if.or(self.inspiratory_resistance),
         }
@@ -137,6 +191,14 @@ impl Mechanics {
             (Some(_), Some((_, evidence))) => evidence,
             _ => TrappingEvidence::Unknown,
         }
+    }
+
+    /// A compliance read from a plateau without total PEEP, with the expiratory resistance finally in force.
+    fn read_plateau_again(&mut self, cautions: &mut Cautions) -> Result<(), Fault> {
+        let Some(reading) = self.plateau_reading else { return Ok(()) };
+        let compliance = self.compliance_from_plateau(&reading, cautions)?;
+        self.compliance = Some((compliance, Worth::Plateau));
+        Ok(())
     }
 
     fn read_rate(&mut self, settings: &Settings, measured: &Measured) {
@@ -199,6 +261,7 @@ impl Mechanics {
         }
         if let Some(given) = measured.compliance_ml_cmh2o {
             self.compliance = Some((given, Worth::Plateau));
+            self.plateau_reading = None;
             self.trapping_unread = false;
         }
         let at = Bedside { number, settings, measured, phases };
@@ -256,41 +319,41 @@ impl Mechanics {
         }
         let Some(above) = at.plateau_above_peep() else { return Ok(()) };
         let compliance = if let Some(auto) = at.auto_peep() {
+            self.plateau_reading = None;
+            self.trapping_unread = false;
             bedside::compliance(volume_ml, at.driving(above, auto)?)
         } else {
-            self.compliance_from_plateau(at, volume_ml, above, cautions)?
+            let reading = at.plateau_reading(volume_ml, above);
+            self.plateau_reading = Some(reading);
+            self.compliance_from_plateau(&reading, cautions)?
         };
         self.compliance = Some((compliance, Worth::Plateau));
-        if at.auto_peep().is_some() {
-            self.trapping_unread = false;
-        }
         Ok(())
     }
 
     /// Compliance where no total PEEP was measured: with trapping when a resistance is known, else without.
     fn compliance_from_plateau(
         &mut self,
-        at: &Bedside<'_>,
-        volume_ml: f64,
-        above: f64,
+        reading: &PlateauReading,
         cautions: &mut Cautions,
     ) -> Result<f64, Fault> {
+        let PlateauReading { number, volume_ml, above_cmh2o: above, peep_cmh2o, expiratory_s } = *reading;
         self.trapping_unread = false;
         let apparent = volume_ml / above;
         let Some((resistance, evidence)) = self.expiratory() else { return Ok(apparent) };
-        match bedside::compliance_with_trapping(volume_ml, above, at.phases.expiratory_s, resistance) {
+        match bedside::compliance_with_trapping(volume_ml, above, expiratory_s, resistance) {
             Ok(compliance) => Ok(compliance),
             Err(Unread::Emptying(share)) if share >= 1.0 && evidence == TrappingEvidence::Given => {
                 Err(Fault::new(
                     [
-                        Place::in_entry(at.number, "measured", "plateau"),
-                        Place::in_entry(at.number, "measured", "expiratory_resistance"),
+                        Place::in_entry(number, "measured", "plateau"),
+                        Place::in_entry(number, "measured", "expiratory_resistance"),
                     ],
                     format!(
                         "a plateau of {:.0} cmH2O with {volume_ml:.0} mL cannot be: at an expiratory resistance of \
                          {resistance:.0} cmH2O·s/L the lung cannot empty so much in {:.1} s",
-                        above + at.settings.peep_cmh2o.unwrap_or(0.0),
-                        at.phases.expiratory_s
+                        above + peep_cmh2o,
+                        expiratory_s
                     ),
                     "Check plateau, expiratory_resistance and timing; an expiratory hold (total_peep) settles it.",
                 ))
@@ -330,9 +393,11 @@ impl Mechanics {
             return Ok(());
         }
         let better = |worth: Worth| self.compliance.is_none_or(|(_, had)| had <= worth);
-        let resistances = self.inspiratory_resistance.zip(self.expiratory().map(|(value, _)| value));
+        let expiratory = self.expiratory_resistance.map(|(value, _)| value).or(self.inspiratory_resistance);
+        let resistances = self.inspiratory_resistance.zip(expiratory);
         if let Some((inspiratory, expiratory)) = resistances {
-            if !better(Worth::Volume) {
+            // A resistance typed in this entry makes it the latest that yields a compliance.
+            if !better(Worth::Volume) && measured.resistance_cmh2o_s_l.is_none() {
                 return Ok(());
             }
             let found = match at.auto_peep() {
@@ -359,9 +424,12 @@ impl Mechanics {
                     "Check exhaled_tidal_volume, inspiratory_pressure, resistance and timing.",
                 ));
             };
+            self.plateau_reading = None;
+            self.trapping_unread = false;
             self.compliance = Some((compliance, Worth::Volume));
         } else if better(Worth::Crude) {
             self.compliance = Some((volume_ml / pressure, Worth::Crude));
+            self.trapping_unread = true;
             cautions.say(
                 "trapping_unknown",
                 "Compliance is read as tidal volume over inspiratory pressure, so trapped gas is unknown: an \
@@ -384,6 +452,7 @@ impl Mechanics {
         let given_compliance = measured.compliance_ml_cmh2o;
         let given_resistance = measured.resistance_cmh2o_s_l;
         let expiratory = self.expiratory_resistance.map(|(value, _)| value).or(given_resistance);
+        self.plateau_reading = None;
         let (compliance, auto) = if let Some(auto) = at.auto_peep() {
             let driving = at.driving(above, auto)?;
             self.trapping_unread = false;
@@ -391,7 +460,7 @@ impl Mechanics {
         } else if expiratory.is_some() {
             let compliance = match given_compliance {
                 Some(given) => given,
-                None => self.compliance_from_plateau(at, volume_ml, above, cautions)?,
+                None => self.compliance_from_plateau(&at.plateau_reading(volume_ml, above), cautions)?,
             };
             (compliance, (above - volume_ml / compliance).max(0.0))
         } else {
@@ -448,15 +517,25 @@ impl Mechanics {
         let Bedside { settings, measured, phases, .. } = *at;
         let (Some(auto), None) = (at.auto_peep(), measured.expiratory_resistance_cmh2o_s_l) else { return };
         let Some((compliance, _)) = self.compliance else { return };
-        let volume_ml = match settings.inflation {
-            Inflation::Volume { tidal_volume_ml, .. } => Some(tidal_volume_ml * self.volume_per_set),
-            Inflation::Pressure { .. } => self.measured_pressure_breath.map(|(_, volume)| volume),
+        let driving = match settings.inflation {
+            Inflation::Volume { tidal_volume_ml, .. } => {
+                Some(tidal_volume_ml * self.volume_per_set / compliance)
+            }
+            // Without a volume of this entry the holds alone give the driving pressure.
+            Inflation::Pressure { .. } if measured.exhaled_tidal_volume_ml.is_none() => {
+                at.plateau_above_peep().map(|above| above - auto).filter(|driving| *driving > 0.0)
+            }
+            Inflation::Pressure { .. } => {
+                self.measured_pressure_breath.map(|(_, volume_ml)| volume_ml / compliance)
+            }
         };
-        let Some(volume_ml) = volume_ml else { return };
-        let driving = volume_ml / compliance;
+        let Some(driving) = driving else { return };
         let litres = compliance / 1000.0;
+        let had = self.expiratory_resistance;
         let resistance = if auto > 0.0 {
             bedside::time_constant_from_auto_peep(auto, driving, phases.expiratory_s) / litres
+        } else if matches!(had, Some((_, TrappingEvidence::Given))) {
+            return; // a hold that shows none does not cut a resistance that was given
         } else {
             let cap = bedside::longest_time_constant(driving, phases.expiratory_s) / litres;
             self.inspiratory_resistance.map_or(cap, |inspiratory| inspiratory.min(cap))
@@ -487,6 +566,16 @@ struct Bedside<'a> {
 impl Bedside<'_> {
     fn plateau_above_peep(&self) -> Option<f64> {
         self.measured.plateau_cmh2o.zip(self.settings.peep_cmh2o).map(|(plateau, peep)| plateau - peep)
+    }
+
+    fn plateau_reading(&self, volume_ml: f64, above_cmh2o: f64) -> PlateauReading {
+        PlateauReading {
+            number: self.number,
+            volume_ml,
+            above_cmh2o,
+            peep_cmh2o: self.settings.peep_cmh2o.unwrap_or(0.0),
+            expiratory_s: self.phases.expiratory_s,
+        }
     }
 
     /// Measured auto-PEEP, cmH2O: given, or total PEEP less PEEP (a total PEEP just below PEEP is a reading of none).

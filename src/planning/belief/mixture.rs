@@ -9,6 +9,8 @@ const NARROW: f64 = 0.25;
 const WIDE: f64 = 1.75;
 /// Weights below this cannot move a quantile by 1e-9.
 const NEGLIGIBLE: f64 = 1e-17;
+/// Means closer than this are one: rounding.
+const COINCIDE: f64 = 1e-13;
 
 /// Points with weights, each spread by the same shape. Mass that is missing from 1 lies at infinity.
 #[derive(Debug, Clone, PartialEq)]
@@ -29,7 +31,15 @@ struct At {
 impl Mixture {
     /// From `(weight, mean)` pairs and the standard deviation `S` of the next gas.
     pub fn new(points: impl Iterator<Item = (f64, f64)>, deviation: f64) -> Self {
-        let points: Vec<_> = points.filter(|(weight, _)| *weight > NEGLIGIBLE).collect();
+        let mut kept: Vec<(f64, f64)> = Vec::new();
+        for (weight, mean) in points.filter(|(weight, _)| *weight > NEGLIGIBLE) {
+            match kept.last_mut() {
+                // Where every breath left the same room, the dead space cancels and all points coincide.
+                Some((heavier, at)) if (mean - *at).abs() < COINCIDE => *heavier += weight,
+                _ => kept.push((weight, mean)),
+            }
+        }
+        let points = kept;
         let mass = points.iter().map(|(weight, _)| weight).sum();
         Self { points, narrow: NARROW.sqrt() * deviation, wide: WIDE.sqrt() * deviation, mass }
     }
@@ -63,7 +73,14 @@ impl Mixture {
 
     /// The density of ln PaCO2 at `z`.
     pub fn density(&self, z: f64) -> f64 {
-        self.at(z).density
+        let mut density = 0.0;
+        for (weight, mean) in &self.points {
+            for deviation in [self.narrow, self.wide] {
+                let u = (z - mean) / deviation;
+                density += 0.5 * weight / deviation * libm::exp(-0.5 * u * u);
+            }
+        }
+        density / (2.0 * PI).sqrt()
     }
 
     /// The place below which a share `p` lies; `None` when the mass at infinity reaches down to it.
@@ -86,8 +103,8 @@ impl Mixture {
             let newton = miss / at.density;
             let step = newton / (1.0 - 0.5 * newton * at.slope / at.density);
             let next = z - step;
-            // Halley's steps shrink cubically: after one of 1e-5 the next would be far below rounding.
-            if step.abs() < 1e-5 && next >= low && next <= high {
+            // Halley's steps shrink cubically: after one of 1e-4 deviations the next would be far below 1e-9.
+            if step.abs() < 1e-4 * self.narrow && next >= low && next <= high {
                 return Some(next);
             }
             z = if next > low && next < high { next } else { f64::midpoint(low, high) };

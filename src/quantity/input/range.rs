@@ -46,6 +46,8 @@ pub struct Plausible {
     pub example: &'static str,
     /// Whether the units of weather reports are likely readings.
     pub weather: bool,
+    /// Whether it is spoken of as a flag of the command line rather than a key of a file.
+    pub as_flag: bool,
 }
 
 impl Input {
@@ -61,6 +63,7 @@ impl Input {
             digits,
             example,
             weather: key == Key::BarometricPressure,
+            as_flag: false,
         }
     }
 
@@ -74,6 +77,21 @@ impl Input {
 }
 
 impl Plausible {
+    /// The same, spoken of as a flag of the command line.
+    #[must_use]
+    pub const fn flag(self) -> Self {
+        Self { as_flag: true, ..self }
+    }
+
+    /// How a value is written: `rate = 22` in a file, `--rate 22` as a flag.
+    pub fn written(&self, value: &str) -> String {
+        if self.as_flag {
+            format!("--{} {value}", self.name.replace('_', "-"))
+        } else {
+            format!("{} = {value}", self.name)
+        }
+    }
+
     const fn unit(&self) -> &'static str {
         self.dimension.unit()
     }
@@ -104,7 +122,7 @@ impl Plausible {
         if self.dimension == Dimension::Ratio {
             return format!("{} to {}", show::ratio(self.min), show::ratio(self.max));
         }
-        let [low, high] = [self.min, self.max].map(|bound| show::number(bound, 2));
+        let [low, high] = [self.min, self.max].map(|bound| show::number(bound, 3));
         format!("{low} to {}", show::joined(&high, self.unit()))
     }
 
@@ -150,7 +168,8 @@ impl Plausible {
                 .dimension
                 .units()
                 .iter()
-                .filter(|unit| unit.offered || self.weather)
+                // No weather report speaks of centimetres of water.
+                .filter(|unit| unit.offered || (self.weather && unit.word != "cmH2O"))
                 .filter(|unit| unit.word != written && self.holds(unit.to_default(number)))
                 .collect();
             // hPa and mbar are one unit by two names: one offer is enough.
@@ -160,35 +179,32 @@ impl Plausible {
                 return readings.join("; ");
             }
             if self.holds(-number) {
-                return format!("a sign missing? write {} = {} if so", self.name, show::number(-number, 3));
+                return format!("a sign missing? if so, write {}", self.written(&show::number(-number, 3)));
             }
+            // A share is seldom ten-fold wrong, and mostly a percentage, which was offered above.
             if matches!(typed, Typed::Plain)
+                && self.dimension != Dimension::Fraction
                 && let Some(slip) = self.slip(value)
             {
                 return slip;
             }
         }
-        format!("write, for example, {} = {}", self.name, self.example)
+        format!("write, for example, {}", self.written(self.example))
     }
 
     fn offer(&self, number: f64, unit: &Unit) -> String {
         let shown = show::number(number, 3);
         let value = unit.to_default(number);
         if unit.word == self.unit() {
-            let text = self.shown(value);
+            let reading = self.shown(value);
             return format!(
-                "{shown} would be plausible in {}: write {} = {shown} if {text} was meant",
-                unit_words(unit),
-                self.name
+                "{reading} would be plausible: if that was meant, write {}",
+                self.written(&shown)
             );
         }
-        format!(
-            "{shown} would be plausible in {}: write {} = \"{shown} {}\" if so ({})",
-            unit.word,
-            self.name,
-            unit.word,
-            self.shown_rounded(value)
-        )
+        let (reading, converted) = (show::joined(&shown, unit.word), self.shown_rounded(value));
+        let written = self.written(&format!("\"{reading}\""));
+        format!("{reading} would be plausible ({converted}): if that was meant, write {written}")
     }
 
     fn slip(&self, value: f64) -> Option<String> {
@@ -201,17 +217,12 @@ impl Plausible {
         slips.into_iter().find(|(factor, _)| self.holds(value / factor)).map(|(factor, question)| {
             let meant = value / factor;
             format!(
-                "{question} {} would be plausible: look again, and write {} = {} if so",
+                "{question} {} would be plausible: look again, and if that is it, write {}",
                 self.shown(meant),
-                self.name,
-                show::number(meant, 3)
+                self.written(&show::number(meant, 3))
             )
         })
     }
-}
-
-fn unit_words(unit: &Unit) -> &'static str {
-    if unit.word.is_empty() { "plain numbers" } else { unit.word }
 }
 
 #[cfg(test)]
@@ -229,22 +240,25 @@ mod tests {
         let (message, help) = refused(Key::Paco2, 5.3);
         assert_eq!(message, "PaCO2 of 5.3 mmHg is below what is plausible, 10 to 150 mmHg");
         // 5.3 kPa is 39.75 mmHg by the definition of the torr.
-        assert_eq!(help, "5.3 would be plausible in kPa: write paco2 = \"5.3 kPa\" if so (39.8 mmHg)");
+        assert_eq!(
+            help,
+            "5.3 kPa would be plausible (39.8 mmHg): if that was meant, write paco2 = \"5.3 kPa\""
+        );
         assert_eq!(
             refused(Key::Height, 1.63).1,
-            "1.63 would be plausible in m: write height = \"1.63 m\" if so (163 cm)"
+            "1.63 m would be plausible (163 cm): if that was meant, write height = \"1.63 m\""
         );
         assert_eq!(
             refused(Key::Fio2, 60.0).1,
-            "60 would be plausible in %: write fio2 = \"60 %\" if so (0.6)"
+            "60 % would be plausible (0.6): if that was meant, write fio2 = \"60 %\""
         );
         assert_eq!(
             refused(Key::TidalVolume, 0.38).1,
-            "0.38 would be plausible in L: write tidal_volume = \"0.38 L\" if so (380 mL)"
+            "0.38 L would be plausible (380 mL): if that was meant, write tidal_volume = \"0.38 L\""
         );
         assert_eq!(
             refused(Key::Temperature, 100.4).1,
-            "100.4 would be plausible in °F: write temperature = \"100.4 °F\" if so (38 °C)"
+            "100.4 °F would be plausible (38 °C): if that was meant, write temperature = \"100.4 °F\""
         );
     }
 
@@ -254,19 +268,19 @@ mod tests {
         assert_eq!(message, "set rate of 220/min is above what is plausible, 4 to 60/min");
         assert_eq!(
             help,
-            "10 times too high? 22/min would be plausible: look again, and write rate = 22 if so"
+            "10 times too high? 22/min would be plausible: look again, and if that is it, write rate = 22"
         );
         assert_eq!(
             refused(Key::TidalVolume, 38.0).1,
-            "10 times too low? 380 mL would be plausible: look again, and write tidal_volume = 380 if so"
+            "10 times too low? 380 mL would be plausible: look again, and if that is it, write tidal_volume = 380"
         );
         assert_eq!(
             refused(Key::Ph, 724.0).1,
-            "100 times too high? 7.24 would be plausible: look again, and write ph = 7.24 if so"
+            "100 times too high? 7.24 would be plausible: look again, and if that is it, write ph = 7.24"
         );
         assert_eq!(
             refused(Key::InspiratoryPressureMax, 28.0).1,
-            "a sign missing? write inspiratory_pressure_max = -28 if so"
+            "a sign missing? if so, write inspiratory_pressure_max = -28"
         );
     }
 
@@ -278,7 +292,7 @@ mod tests {
         let out = peep.accept(reading.value, typed).unwrap_err();
         // 10 kPa is 101.97 cmH2O by the definition of the conventional centimetre of water.
         assert_eq!(out.message, "set PEEP of 10 kPa (102 cmH2O) is above what is plausible, 0 to 30 cmH2O");
-        assert_eq!(out.help, "10 would be plausible in cmH2O: write peep = 10 if 10 cmH2O was meant");
+        assert_eq!(out.help, "10 cmH2O would be plausible: if that was meant, write peep = 10");
     }
 
     #[test]

@@ -117,7 +117,7 @@ const LENGTH: &[Unit] = &[
     plain("cm", "cm", &["centimetre", "centimetres", "centimeter", "centimeters"]),
     scaled("m", "m", &["metre", "metres", "meter", "meters"], [100.0, 1.0], PREFIX).offered(),
     scaled("mm", "mm", &[], [1.0, 10.0], PREFIX).offered(),
-    scaled("in", "[in_i]", &["inch", "inches", "\"", "''"], [2.54, 1.0], INCH).offered(),
+    scaled("inches", "[in_i]", &["in", "inch", "\""], [2.54, 1.0], INCH).offered(),
     scaled("ft", "[ft_i]", &["foot", "feet", "'"], [30.48, 1.0], INCH),
 ];
 

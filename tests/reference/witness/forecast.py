@@ -263,7 +263,11 @@ def outcome_json(patient, trial, point, target, now_paco2, is_now=False):
         "chance_on_target": chance,
         "ph": ph,
         "bicarbonate_mmol_l": None if ph is None else bicarbonate(ph, point.paco2),
-        "end_tidal_co2_mmhg": p_t * (1.0 - f) if tidal else None,
+        "end_tidal_co2_mmhg": number("end_tidal_co2", patient.gas.measured["end_tidal_co2"])
+        if measured and "end_tidal_co2" in patient.gas.measured
+        else p_t * (1.0 - f)
+        if tidal
+        else None,
         "auto_peep_cmh2o": b.auto_peep,
         "total_peep_cmh2o": b.total_peep,
         "plateau_cmh2o": b.plateau,

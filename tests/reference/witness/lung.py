@@ -88,7 +88,9 @@ class Reader:
         self.c = self.ri = self.re = None
         self.re_kind = None  # given | measured; an assumption is made at the end
         self.trapping_known = True
+        self.crude = False  # C is VT/dPi, nothing else known
         self.again = None  # how to work out C once more when a later entry has changed RE
+        self.per_set = 1.0  # VT/set in volume control so far: a leak stays a leak
 
     def assumed_re(self):
         return self.re if self.re is not None else self.ri
@@ -104,6 +106,11 @@ class Reader:
             return
         _, ti, te = timing(s, own)
         volume, auto = own_volume(entry), measured_auto(entry)
+        if s["control"] == "volume":
+            if has_own_volume(entry):
+                self.per_set = volume / s["tidal_volume"]
+            else:
+                volume *= self.per_set
         distension = m["plateau"] - s.get("peep", 0.0) if "plateau" in m else None
         if distension is not None and distension - (auto or 0.0) <= 0:
             raise Refusal("the plateau is not above the total PEEP")
@@ -117,7 +124,7 @@ class Reader:
             self.pressure_control(m, s, ti, te, volume, auto, distension)
 
     def set_compliance(self, c, known=True):
-        self.c, self.trapping_known, self.again = c, known, None
+        self.c, self.trapping_known, self.again, self.crude = c, known, None, False
 
     def volume_control(self, m, s, te, volume, auto, distension):
         flow = constant_flow_l_s(s)
@@ -167,8 +174,9 @@ class Reader:
             self.measured_expiration(m, te, volume, auto)
         elif volume is not None and self.ri is not None and ("resistance" in m or self.c is None):
             self.from_resistance(m, ti, te, volume, auto, drive)
-        elif volume is not None and self.c is None:
+        elif volume is not None and (self.c is None or self.crude):
             self.set_compliance(volume / drive, known=False)
+            self.crude = True
 
     def hold(self, m, ti, te, volume, auto, distension, drive):
         given = m.get("compliance")
@@ -185,7 +193,7 @@ class Reader:
             x = hold_auto(drive, distension, te / ti)
             c = given or volume / (distension - x)
         if c is None:
-            self.set_compliance(volume / distension, known=False)
+            self.unread_hold(m, ti, volume, distension, drive)
             return
         ri = self.ri
         if "resistance" not in m:
@@ -193,11 +201,18 @@ class Reader:
             ri = ti * 1000.0 / (4.0 * c) if a <= 0.02 else -ti * 1000.0 / (c * math.log(a))
         if auto is None and self.re is None and "resistance" not in m and given is None:
             if volume / 1000.0 / distension / (te / ri) > STEEPEST or c > STIFFEST_ROOT:
-                self.set_compliance(volume / distension, known=False)
+                self.unread_hold(m, ti, volume, distension, drive)
                 return
         self.ri = ri
         self.set_compliance(c)
         self.measured_expiration(m, te, volume if volume is not None else c * (distension - x), auto)
+
+    def unread_hold(self, m, ti, volume, distension, drive):
+        """The hold does not tell compliance from trapping: both stand as if nothing were trapped."""
+        self.set_compliance(volume / distension, known=False)
+        if "resistance" not in m:
+            a = (drive - distension) / drive
+            self.ri = ti * 1000.0 / (4.0 * self.c) if a <= 0.02 else -ti * 1000.0 / (self.c * math.log(a))
 
     def from_resistance(self, m, ti, te, volume, auto, drive):
         if auto is not None:

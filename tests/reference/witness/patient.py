@@ -42,7 +42,9 @@ class Patient:
         self.own = own_rate(entries)
         self.settings = self.last.settings
         until = entries[: entries.index(self.gas) + 1]
-        gas_own = own_rate(until) if any("total_rate" in e.measured for e in until) else self.own
+        # Unchanged settings give the measured PaCO2 back, so a gas drawn under them is read with the own rate of now.
+        heard = any("total_rate" in e.measured for e in until) and not self.measured_now()
+        gas_own = own_rate(until) if heard else self.own
 
         # The baseline: the latest gas, what was dialled then, and the evidence charted with it.
         s = self.gas.settings
