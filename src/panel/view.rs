@@ -116,8 +116,18 @@ fn screen(
     pen: &mut Pen<'_>,
 ) -> Option<Position> {
     let layout = Layout::of(state, area, needs(state, scene));
-    let whole = layout.whole;
+    let cursor = above_foot(state, scene, &layout, pen);
     foot::draw(state, &layout, pen);
+    cursor
+}
+
+fn above_foot(
+    state: &State,
+    scene: Result<&Scene<'_>, &[Fault]>,
+    layout: &Layout,
+    pen: &mut Pen<'_>,
+) -> Option<Position> {
+    let whole = layout.whole;
     match &state.mode {
         Mode::Help { query, chosen } => return help::draw(query, *chosen, state, whole, pen),
         Mode::Form(form) => return form::draw(form, state, whole, pen),
@@ -128,7 +138,7 @@ fn screen(
         Mode::Leave(form) => return ask::leave(form, whole, pen),
         Mode::Look | Mode::Typing(_) | Mode::Walk { .. } | Mode::Slots | Mode::Note => {}
     }
-    head::draw(state, scene, &layout, pen);
+    head::draw(state, scene, layout, pen);
     match scene {
         Err(faults) => {
             ask::no_forecast(faults, layout.body, pen);
@@ -163,7 +173,7 @@ fn screen(
                 view_in(*view, state, scene, *place, pen);
             }
             cautions::foot(scene, layout.cautions, pen);
-            cursor.or_else(|| table_cursor(state, scene, &layout))
+            cursor.or_else(|| table_cursor(state, scene, layout))
         }
     }
 }

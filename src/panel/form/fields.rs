@@ -128,7 +128,7 @@ impl FieldId {
                 let example = input.example.trim_matches('"');
                 match (input.dimension, unit) {
                     (Dimension::GasPressure, unit) => unit.word().to_owned(),
-                    _ if input.unit().is_empty() => example.to_owned(),
+                    _ if input.unit().is_empty() => format!("e.g. {example}"),
                     _ => input.unit().to_owned(),
                 }
             }

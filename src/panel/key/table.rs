@@ -117,7 +117,7 @@ pub static KEYS: &[KeyRow] = &[
         "chart",
         &[(key('c'), Action::Chart)],
     ),
-    row(When::Look, "e", "enter a gas, measurements and settings", "enter gas", &[(key('e'), Action::Form)]),
+    row(When::Look, "e", "enter a gas, measurements and settings", "gas", &[(key('e'), Action::Form)]),
     row(
         When::Look,
         "Tab Shift-Tab",

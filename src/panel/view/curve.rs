@@ -20,7 +20,7 @@ const HIGHEST_MMHG: f64 = 160.0;
 pub fn draw(state: &State, scene: &Scene<'_>, area: Rect, pen: &mut Pen<'_>) {
     let Ok(tried) = &scene.tried else { return };
     let line = turned_line(state, tried);
-    let said = lines(&sentence(scene, tried, line, pen), area.width.saturating_sub(2));
+    let said = lines(&sentence(scene, tried, line, area.height < 6, pen), area.width.saturating_sub(2));
     let rows = u16::try_from(said.len()).unwrap_or(1).min(area.height.saturating_sub(3).max(1));
     let above = Rect { height: area.height.saturating_sub(rows), ..area };
     let half = area.width / 2;
@@ -152,7 +152,7 @@ fn summit(scene: &Scene<'_>, tried: &Tried) -> Option<Summit> {
 }
 
 /// Why PaCO2 goes where it goes, in one sentence.
-fn sentence(scene: &Scene<'_>, tried: &Tried, line: LineId, pen: &Pen<'_>) -> String {
+fn sentence(scene: &Scene<'_>, tried: &Tried, line: LineId, short: bool, pen: &Pen<'_>) -> String {
     let (now, then) = (&scene.now.state, &tried.outcome.state);
     let gas = |mmhg: f64| pen.face.gas(mmhg);
     if tried.dialled.settings.control() == Control::Pressure
@@ -160,6 +160,12 @@ fn sentence(scene: &Scene<'_>, tried: &Tried, line: LineId, pen: &Pen<'_>) -> St
         && then.rate_per_min > summit.rate_per_min + 0.5
         && line == LineId::Rate
     {
+        if short {
+            return format!(
+                "Past the summit (▲ {}/min): a faster rate raises PaCO2, a slower one lowers it.",
+                number(summit.rate_per_min, 0)
+            );
+        }
         let trapped = then.auto_peep_cmh2o.map_or_else(String::new, |auto| {
             format!(", {} cmH2O stay trapped", pen.face.value(auto, Dimension::AirwayPressure))
         });
@@ -173,27 +179,35 @@ fn sentence(scene: &Scene<'_>, tried: &Tried, line: LineId, pen: &Pen<'_>) -> St
             number(then.tidal_volume_ml, 0),
         );
     }
-    if let Some(share) = share_sentence(scene, tried) {
+    if let Some(share) = share_sentence(scene, tried, short) {
         return share;
     }
     match line {
         LineId::Peep | LineId::Fio2 => {
             format!("{} does not move the forecast PaCO2.", line.row().name)
         }
-        _ => step_sentence(scene, tried, line, pen).unwrap_or_else(|| {
+        _ => step_sentence(scene, tried, line, short, pen).unwrap_or_else(|| {
             format!("PaCO2 goes from {} to {}.", gas(now.paco2_mmhg), gas(then.paco2_mmhg))
         }),
     }
 }
 
 /// Where minute volume stays and the share of it that is useful moves: that is the reason.
-fn share_sentence(scene: &Scene<'_>, tried: &Tried) -> Option<String> {
+fn share_sentence(scene: &Scene<'_>, tried: &Tried, short: bool) -> Option<String> {
     let (now, then) = (&scene.now.state, &tried.outcome.state);
     let moved = then.minute_ventilation_l_min / now.minute_ventilation_l_min;
     let (before, after) = (1.0 - now.dead_space_fraction?, 1.0 - then.dead_space_fraction?);
     let (slower, larger) = (then.rate_per_min < now.rate_per_min, then.tidal_volume_ml > now.tidal_volume_ml);
     if (moved - 1.0).abs() > 0.04 || (after - before).abs() < 0.015 || slower != larger {
         return None;
+    }
+    if short {
+        let how = if slower { "Fewer, larger breaths" } else { "More, smaller breaths" };
+        let driving = then
+            .driving_pressure_cmh2o
+            .zip(now.driving_pressure_cmh2o)
+            .map_or_else(String::new, |(then, now)| format!("; driving {} to {} cmH2O", number(now, 0), number(then, 0)));
+        return Some(format!("{how}: {:.0} % useful, not {:.0} %{driving}.", after * 100.0, before * 100.0));
     }
     let how = if slower { "fewer, larger breaths pay" } else { "more, smaller breaths pay" };
     let driving = then.driving_pressure_cmh2o.zip(now.driving_pressure_cmh2o).map_or_else(
@@ -209,7 +223,7 @@ fn share_sentence(scene: &Scene<'_>, tried: &Tried) -> Option<String> {
 }
 
 /// What one step of a line buys from here, and what it bought from now.
-fn step_sentence(scene: &Scene<'_>, tried: &Tried, line: LineId, pen: &Pen<'_>) -> Option<String> {
+fn step_sentence(scene: &Scene<'_>, tried: &Tried, line: LineId, short: bool, pen: &Pen<'_>) -> Option<String> {
     let timing = tried.dialled.settings.timing;
     let input = line.key(timing)?.input();
     let steps = scene.steps();
@@ -232,6 +246,13 @@ fn step_sentence(scene: &Scene<'_>, tried: &Tried, line: LineId, pen: &Pen<'_>) 
     let (here, there) = (buys(&tried.dialled)?, buys(&scene.now_dialled));
     let signed = |value: f64| format!("{value:+.*}", unit.digits() + 1);
     let step = crate::quantity::show::joined(&format!("+{}", number(step, 1)), input.unit());
+    if short {
+        let from_now = match there {
+            Some(there) if !scene.untouched() => format!(", {} from now", signed(there)),
+            _ => String::new(),
+        };
+        return Some(format!("{step} moves PaCO2 by {} {} here{from_now}.", signed(here), unit.word()));
+    }
     let then = match there {
         Some(there) if !scene.untouched() => format!("; from now it is {}", signed(there)),
         _ => String::new(),

@@ -2,7 +2,7 @@
 
 use ratatui::layout::Rect;
 
-use super::layout::TALL;
+use super::layout::FOLLOWS;
 use super::pen::Pen;
 use super::rail::Rail;
 use crate::panel::scene::{Scene, Tried};
@@ -13,8 +13,8 @@ use crate::quantity::unit::Dimension;
 /// Columns: where now ends and where try ends.
 const fn columns(width: u16) -> (u16, u16) {
     match width {
-        0..36 => (20, 28),
-        36..46 => (26, 34),
+        0..36 => (20, 26),
+        36..46 => (24, 31),
         _ => (26, 34),
     }
 }
@@ -38,7 +38,7 @@ pub fn draw(scene: &Scene<'_>, area: Rect, pen: &mut Pen<'_>) {
             return;
         }
     };
-    let full = area.height + 1 >= TALL / 3;
+    let full = area.height >= FOLLOWS[0];
     let mut y = 1;
     paco2(scene, tried, area, y, pen);
     y += 1;
@@ -47,7 +47,7 @@ pub fn draw(scene: &Scene<'_>, area: Rect, pen: &mut Pen<'_>) {
         pen.text(area, 2, y, &drawing(scene, tried, width.saturating_sub(2)), pen.theme.tried());
         y += 1;
     }
-    for line in [interval(&tried.outcome, pen), chance(scene, tried, pen)] {
+    for line in [interval(&tried.outcome, area.width, pen), chance(scene, tried, area.width, pen)] {
         pen.text(area, 2, y, &line, pen.theme.plain());
         y += 1;
     }
@@ -83,7 +83,11 @@ fn paco2(scene: &Scene<'_>, tried: &Tried, area: Rect, y: u16, pen: &mut Pen<'_>
     let digits = pen.face.unit.digits();
     let change = shown(then) - shown(now);
     let by = crate::quantity::show::number(change.abs(), digits);
+    let narrow = area.width < 46;
     let words = match (by.as_str(), change > 0.0) {
+        ("0", _) if narrow => String::new(),
+        (by, true) if narrow => format!("+{by}"),
+        (by, false) if narrow => format!("-{by}"),
         ("0", _) => "as now".to_owned(),
         (by, true) => format!("{by} higher"),
         (by, false) => format!("{by} lower"),
@@ -92,7 +96,7 @@ fn paco2(scene: &Scene<'_>, tried: &Tried, area: Rect, y: u16, pen: &mut Pen<'_>
 }
 
 /// How sure, in words that cannot be taken for a limit.
-fn interval(outcome: &Outcome, pen: &Pen<'_>) -> String {
+fn interval(outcome: &Outcome, width: u16, pen: &Pen<'_>) -> String {
     let interval = &outcome.interval;
     if interval.paco2_expected_mmhg.is_none() {
         return "how sure is unknown: repeat the gas early".to_owned();
@@ -100,16 +104,27 @@ fn interval(outcome: &Outcome, pen: &Pen<'_>) -> String {
     let range = |low, high| pen.face.gas_range(low, high);
     let half = range(interval.paco2_half_low_mmhg, interval.paco2_half_high_mmhg);
     let wide = range(interval.paco2_low_mmhg, interval.paco2_high_mmhg);
-    format!("1 gas in 2 falls in {half}, 9 in 10 in {wide}")
+    match width {
+        0..36 => format!("1 in 2 {half}, 9 in 10 {wide}"),
+        36..48 => format!("1 gas in 2 in {half}, 9 in 10 in {wide}"),
+        _ => format!("1 gas in 2 falls in {half}, 9 in 10 in {wide}"),
+    }
 }
 
-fn chance(scene: &Scene<'_>, tried: &Tried, pen: &Pen<'_>) -> String {
+fn chance(scene: &Scene<'_>, tried: &Tried, width: u16, pen: &Pen<'_>) -> String {
     let Some([low, high]) = scene.band_mmhg() else {
-        return "goal unknown: chart the pH, or type a PaCO2".to_owned();
+        return if width < 46 { "goal unknown: chart the pH" } else { "goal unknown: chart the pH, or type a PaCO2" }.to_owned();
     };
     let band = pen.face.gas_range(Some(low), Some(high));
     match tried.outcome.interval.chance_on_target {
-        Some(chance) => format!("goal {band}: {:.0} in 100 such gases land in it", chance * 100.0),
+        Some(chance) => {
+            let chance = format!("{:.0} in 100", chance * 100.0);
+            match width {
+                0..36 => format!("goal {band}: {chance}"),
+                36..48 => format!("goal {band}: {chance} land in it"),
+                _ => format!("goal {band}: {chance} such gases land in it"),
+            }
+        }
         None => format!("goal {band}"),
     }
 }
@@ -143,58 +158,35 @@ fn drawing(scene: &Scene<'_>, tried: &Tried, width: u16) -> String {
 
 fn air(scene: &Scene<'_>, tried: &Tried, area: Rect, y: u16, full: bool, pen: &mut Pen<'_>) {
     let (now, then) = (&scene.now.state, &tried.outcome.state);
+    let (now_end, try_end) = columns(area.width);
     let minute = |state: &State| Some(state.minute_ventilation_l_min);
-    pair("minute volume", "L/min", [minute(now), minute(then)], Dimension::Flow, area, y, pen);
-    let (_, try_end) = columns(area.width);
+    let moved = if now_end < 24 { "air moved" } else { "minute volume" };
+    pair(moved, "L/min", [minute(now), minute(then)], Dimension::Flow, area, y, pen);
     let estimated = scene.forecaster.baseline().exchange.co2_evidence == Co2Evidence::Estimated;
-    let word = if estimated { " (est.)" } else { "" };
-    let useful = then.dead_space_fraction.map(|share| 1.0 - share);
-    let said = useful
-        .map_or_else(|| "useful unknown".to_owned(), |share| format!("{:.0} % useful{word}", share * 100.0));
-    if !full {
-        let shown = if area.width < 46 {
-            useful.map_or_else(|| "?".to_owned(), |share| format!("{:.0}% use", share * 100.0))
-        } else {
-            said
-        };
-        pen.text(area, try_end + 1, y, &shown, pen.theme.plain());
-        return;
-    }
-    let names =
-        if estimated { ["  useful, estimated", "  wasted, estimated"] } else { ["  useful", "  wasted"] };
-    let [useful_name, wasted_name] = names;
+    let names = match (estimated, now_end < 24) {
+        (false, _) => ["  useful", "  wasted"],
+        (true, true) => ["  useful est.", "  wasted est."],
+        (true, false) => ["  useful estimated", "  wasted estimated"],
+    };
+    // Where the word leaves no room for it, the unit is the one of the line above.
+    let unit = if estimated { "" } else { "L/min" };
+    let [useful, wasted] = names;
     let of = |value: fn(&State) -> Option<f64>| [value(now), value(then)];
-    pair(
-        useful_name,
-        if estimated { "" } else { "L/min" },
-        of(|state| state.alveolar_ventilation_l_min),
-        Dimension::Flow,
-        area,
-        y + 1,
-        pen,
-    );
-    pair(
-        wasted_name,
-        if estimated { "" } else { "L/min" },
-        of(|state| state.dead_space_loss_l_min),
-        Dimension::Flow,
-        area,
-        y + 2,
-        pen,
-    );
+    pair(useful, unit, of(|state| state.alveolar_ventilation_l_min), Dimension::Flow, area, y + 1, pen);
     let room = area.width.saturating_sub(try_end + 2);
     let share = then.dead_space_fraction;
+    if !full {
+        if let (Some(share), true) = (share, room >= 5) {
+            pen.text(area, try_end + 2, y + 1, &format!("{:.0} %", (1.0 - share) * 100.0), pen.theme.plain());
+        }
+        return;
+    }
+    pair(wasted, unit, of(|state| state.dead_space_loss_l_min), Dimension::Flow, area, y + 2, pen);
     if let (Some(share), true) = (share, room >= 8) {
         let width = room.min(30);
         let mut rail = Rail::new(width, '░');
         rail.fill(0.0, 1.0 - share, '█');
         pen.text(area, try_end + 2, y + 1, &rail.text(), pen.theme.tried());
-        pen.text(
-            area,
-            try_end + 2,
-            y + 2,
-            &format!("{:.0} % of each breath", share * 100.0),
-            pen.theme.plain(),
-        );
+        pen.text(area, try_end + 2, y + 2, &format!("{:.0} % of a breath", share * 100.0), pen.theme.plain());
     }
 }

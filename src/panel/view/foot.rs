@@ -1,7 +1,9 @@
 //! The foot: what happened, or the keys that matter here; and that this is decision support.
 
+use ratatui::layout::Rect;
+
 use super::layout::Layout;
-use super::pen::Pen;
+use super::pen::{Pen, lines};
 use crate::panel::key::{When, rows};
 use crate::panel::state::{Mode, State};
 
@@ -12,6 +14,23 @@ const SAFETY: [&str; 3] = [
     "Decision support. Repeat the gas; protocol, clinician decide.",
 ];
 
+/// A message takes at most this many rows, upwards from the keys.
+const MESSAGE_ROWS: usize = 3;
+
+/// What happened: over the keys, and where it is long over the rows above them.
+fn said_last(message: &str, layout: &Layout, pen: &mut Pen<'_>) {
+    let wrapped = lines(message, layout.foot.width.saturating_sub(2));
+    let shown: Vec<&String> = wrapped.iter().take(MESSAGE_ROWS).collect();
+    let rows = u16::try_from(shown.len()).unwrap_or(1);
+    let top = layout.foot.y.saturating_sub(rows.saturating_sub(1));
+    let place = Rect { y: top, height: rows, ..layout.foot };
+    let blank = " ".repeat(usize::from(place.width));
+    for (y, line) in (0..rows).zip(shown) {
+        pen.text(place, 0, y, &blank, pen.theme.plain());
+        pen.text(place, 1, y, line, pen.theme.tried());
+    }
+}
+
 /// Draws the foot.
 pub fn draw(state: &State, layout: &Layout, pen: &mut Pen<'_>) {
     let theme = pen.theme;
@@ -19,7 +38,7 @@ pub fn draw(state: &State, layout: &Layout, pen: &mut Pen<'_>) {
     let said = SAFETY.iter().find(|said| said.len() < width).unwrap_or(&SAFETY[2]);
     pen.text(layout.safety, 1, 0, said, theme.quiet());
     if let Some(message) = &state.message {
-        pen.text(layout.foot, 1, 0, message, theme.tried());
+        said_last(message, layout, pen);
         return;
     }
     if let Mode::Slots = state.mode {
@@ -46,17 +65,45 @@ pub fn draw(state: &State, layout: &Layout, pen: &mut Pen<'_>) {
         );
         return;
     }
+    keys(When::of(&state.mode), layout, pen);
+}
+
+/// The keys that matter here, as many as fit; the last one named always stands at the end.
+fn keys(when: When, layout: &Layout, pen: &mut Pen<'_>) {
+    let parts: Vec<(&str, &str)> =
+        rows(when).filter(|row| !row.foot.is_empty()).map(|row| (first_keys(row.shown), row.foot)).collect();
+    let wide = |(keys, does): &(&str, &str)| u16::try_from(keys.chars().count() + does.len() + 3).unwrap_or(u16::MAX);
+    let help = parts.iter().position(|(keys, _)| *keys == "?");
+    let end = layout.foot.width.saturating_sub(help.and_then(|at| parts.get(at)).map_or(0, wide));
     let mut x = 1;
-    for row in rows(When::of(&state.mode)).filter(|row| !row.foot.is_empty()) {
-        let needed = u16::try_from(row.shown.chars().count() + row.foot.len() + 3).unwrap_or(0);
-        let keys = row.shown.strip_suffix(" Ctrl-C").unwrap_or(row.shown);
-        let keys = keys.strip_suffix(" h l").unwrap_or(keys);
-        let keys = keys.strip_suffix(" Shift-Tab").unwrap_or(keys);
-        if x + needed > layout.foot.width + 8 {
-            continue;
+    for (at, part) in parts.iter().enumerate().filter(|(at, _)| Some(*at) != help) {
+        if x + wide(part) > end + 2 {
+            break;
         }
-        x = pen.text(layout.foot, x, 0, keys, theme.key());
-        x = pen.text(layout.foot, x + 1, 0, row.foot, theme.plain());
-        x += 2;
+        x = key(part, x, layout, pen);
+        if help.is_some_and(|help| at + 1 == help) {
+            break;
+        }
     }
+    if let Some(part) = help.and_then(|at| parts.get(at)) {
+        x = key(part, x, layout, pen);
+    }
+    for part in parts.iter().skip(help.map_or(parts.len(), |at| at + 1)) {
+        if x + wide(part) <= layout.foot.width + 2 {
+            x = key(part, x, layout, pen);
+        }
+    }
+}
+
+fn key((keys, does): &(&str, &str), x: u16, layout: &Layout, pen: &mut Pen<'_>) -> u16 {
+    let x = pen.text(layout.foot, x, 0, keys, pen.theme.key());
+    pen.text(layout.foot, x + 1, 0, does, pen.theme.plain()) + 2
+}
+
+/// The first of several keys that do the same.
+fn first_keys(shown: &str) -> &str {
+    [" Ctrl-C", " h l", " j k", " Shift-Tab", " h j k l"]
+        .iter()
+        .find_map(|rest| shown.strip_suffix(rest))
+        .unwrap_or(shown)
 }

@@ -40,11 +40,6 @@ fn columns(state: &State, scene: &Scene<'_>) -> Vec<Column> {
 pub fn draw(state: &State, scene: &Scene<'_>, area: Rect, pen: &mut Pen<'_>) {
     let columns = columns(state, scene);
     let face = pen.face;
-    if columns.len() == 2 {
-        let said =
-            "No trial is kept yet: s then 1, 2 or 3 keeps what is tried; the same again brings it back.";
-        pen.text(area, 1, area.height - 1, said, pen.theme.plain());
-    }
     let unit = face.unit.word();
     let mut rows: Vec<(String, Box<dyn Fn(&Dialled, &Outcome) -> String>)> = vec![
         ("rate × volume".to_owned(), Box::new(|dialled, _| dialled_words(dialled))),
@@ -89,6 +84,11 @@ pub fn draw(state: &State, scene: &Scene<'_>, area: Rect, pen: &mut Pen<'_>) {
     }
     for (column, (title, _)) in (1..).zip(&columns) {
         pen.right(area, NAME + column * COLUMN, 0, title, pen.theme.heading());
+    }
+    if columns.len() == 2 {
+        let said = "No trial is kept yet: s, then 1, 2 or 3, keeps what is tried.";
+        let beside = Rect { x: area.x + NAME + 2 * COLUMN + 3, width: area.width.saturating_sub(NAME + 2 * COLUMN + 3), ..area };
+        pen.wrapped(beside, 0, said, pen.theme.plain());
     }
     for (y, (name, cell)) in (1..area.height).zip(&rows) {
         pen.text(area, 1, y, name, pen.theme.plain());

@@ -48,7 +48,7 @@ pub const WIDE: u16 = 140;
 /// From this height on what follows is told in full.
 pub const TALL: u16 = 28;
 /// The rows of what follows, in full and in short, heading included.
-const FOLLOWS: [u16; 2] = [9, 6];
+pub const FOLLOWS: [u16; 2] = [9, 7];
 
 impl Layout {
     /// The layout of a screen; `area` is at least the least one.
@@ -78,8 +78,8 @@ impl Layout {
         let tabs = row(1 + body_height, u16::from(view_height > 0));
         let below = row(2 + body_height, view_height);
         let left = match area.width {
-            0..80 => 29,
-            80..100 => 38,
+            0..80 => 32,
+            80..100 => 37,
             100..WIDE => 42,
             _ => 46,
         };

@@ -19,8 +19,8 @@ const VERDICT: u16 = 9;
 /// Columns: where now ends, where try ends, where the rail begins and how wide it is.
 fn columns(width: u16) -> (u16, u16, u16, u16) {
     let (now, tried) = match width {
-        0..36 => (16, 22),
-        36..46 => (24, 31),
+        0..36 => (13, 18),
+        36..46 => (23, 29),
         _ => (26, 33),
     };
     let start = tried + 1;
@@ -76,9 +76,9 @@ pub const fn short(id: LimitId) -> &'static str {
         LimitId::TidalVolumePerKg => "volume",
         LimitId::Plateau => "plateau",
         LimitId::DrivingPressure => "driving",
-        LimitId::Rate => "total rate",
+        LimitId::Rate => "rate",
         LimitId::AutoPeep => "auto-PEEP",
-        LimitId::ExpiratoryTimeConstants => "expiration",
+        LimitId::ExpiratoryTimeConstants => "exp. time",
         LimitId::MechanicalPower => "power",
         LimitId::LoadIndex => "load",
         LimitId::Ph => "pH",
@@ -114,9 +114,12 @@ fn one(
 ) {
     let (theme, face) = (pen.theme, pen.face);
     let (now_end, try_end, start, width) = columns(area.width);
-    let names = Rect { width: now_end.saturating_sub(5), ..area };
-    let x = pen.text(names, 0, y, short(now.id), theme.plain());
-    pen.text(names, x + 1, y, &bound_words(now, face), theme.quiet());
+    let names = Rect { width: now_end.saturating_sub(if area.width < 36 { 4 } else { 5 }), ..area };
+    let name = if area.width >= 46 && now.id == LimitId::Rate { "total rate" } else { short(now.id) };
+    let x = pen.text(names, 0, y, name, theme.plain());
+    if area.width >= 36 {
+        pen.text(names, x + 1, y, &bound_words(now, face), theme.quiet());
+    }
     pen.right(area, now_end, y, &value(now, scene, face), theme.plain());
     let shown = tried.unwrap_or(now);
     let style = theme.verdict(shown.verdict);
@@ -126,9 +129,10 @@ fn one(
     if width > 0 {
         pen.text(area, start, y, &drawing(now, shown, width), style);
     }
-    let verdict_x = area.width.saturating_sub(VERDICT);
+    let narrow = area.width < 36;
+    let verdict_x = area.width.saturating_sub(if narrow { VERDICT - 1 } else { VERDICT });
     let x = pen.text(area, verdict_x, y, mark(shown.verdict), style);
-    pen.text(area, x + 1, y, shown.verdict.word(), style);
+    pen.text(area, if narrow { x } else { x + 1 }, y, shown.verdict.word(), style);
 }
 
 fn drawing(now: &LimitVerdict, tried: &LimitVerdict, width: u16) -> String {

@@ -70,8 +70,8 @@ pub fn line_at(layout: &Layout, state: &State, scene: &Scene<'_>, at: Position) 
 /// Columns: where now ends and where try ends.
 const fn columns(width: u16) -> (u16, u16) {
     match width {
-        0..36 => (20, 28),
-        36..40 => (28, 37),
+        0..36 => (22, 31),
+        36..40 => (27, 36),
         40..45 => (31, 40),
         _ => (34, 44),
     }
@@ -155,17 +155,54 @@ fn shown(id: LineId, dialled: &Dialled, scene: &Scene<'_>, pen: &Pen<'_>) -> Str
     }
 }
 
-/// A line's name, with the word for what is estimated or assumed.
-fn name(id: LineId, scene: &Scene<'_>, timing: Timing) -> (String, &'static str) {
+/// A line's name and unit in at most `room` columns, with the word for what is estimated or assumed.
+fn name(id: LineId, scene: &Scene<'_>, timing: Timing, room: u16) -> (String, &'static str) {
     let baseline = scene.forecaster.baseline();
-    let name = id.name(timing);
     let word = match id {
         LineId::Co2Output if baseline.exchange.co2_evidence == Co2Evidence::Estimated => "estimated",
         LineId::Apparatus if scene.dialled().settings.apparatus_assumed => "assumed",
         LineId::Timing if scene.dialled().settings.timing_assumed => "assumed",
-        _ => return (name.to_owned(), unit(id, timing)),
+        _ => "",
     };
-    (format!("{} {word}", name.replace("if CO2 output", "CO2")), unit(id, timing))
+    let unit = unit(id, timing);
+    let fits = |name: &str, word: &str| {
+        let parts = [name, word, unit].into_iter().filter(|part| !part.is_empty());
+        parts.map(|part| part.chars().count() + 1).sum::<usize>() <= usize::from(room) + 1
+    };
+    let full = id.name(timing);
+    let cut = match word {
+        "estimated" => "est.",
+        "assumed" => "ass.",
+        other => other,
+    };
+    let names = [full, full.trim_start_matches("if "), short(full), shortest(full)];
+    let tries = names.iter().flat_map(|name| [(*name, word), (*name, cut)]);
+    let (name, word) = tries.into_iter().find(|(name, word)| fits(name, word)).unwrap_or((shortest(full), cut));
+    (if word.is_empty() { name.to_owned() } else { format!("{name} {word}") }, unit)
+}
+
+/// A name for narrow screens.
+fn short(name: &str) -> &str {
+    match name {
+        "inspiratory pressure" => "insp. pressure",
+        "inspiratory time" => "insp. time",
+        "inspiratory flow" => "insp. flow",
+        "if CO2 output" => "CO2 out",
+        "tidal volume" => "volume",
+        other => other,
+    }
+}
+
+/// A name for the narrowest: the field's symbols.
+fn shortest(name: &str) -> &str {
+    match name {
+        "inspiratory pressure" => "pressure",
+        "inspiratory flow" => "flow",
+        "if CO2 output" => "CO2",
+        "if compliance" => "C",
+        "if resistance" => "R",
+        other => short(other),
+    }
 }
 
 fn unit(id: LineId, timing: Timing) -> &'static str {
@@ -185,13 +222,10 @@ fn one(id: LineId, state: &State, scene: &Scene<'_>, area: Rect, y: u16, pen: &m
     if marked {
         pen.text(area, 0, y, "▸", theme.tried());
     }
-    let (name, unit) = name(id, scene, timing);
-    let cell_start = now_end.saturating_sub(8);
-    let names = Rect { width: cell_start.max(1), ..area };
+    let names = Rect { width: now_end.saturating_sub(7), ..area };
+    let (name, unit) = name(id, scene, timing, names.width.saturating_sub(1));
     let x = pen.text(names, 1, y, &name, if marked { theme.heading() } else { theme.plain() });
-    if x + 2 < cell_start {
-        pen.text(names, x + 1, y, unit, theme.quiet());
-    }
+    pen.text(names, x + 1, y, unit, theme.quiet());
     let now = match (id, timing, scene.now_dialled.settings.timing) {
         // What times inspiration changed: the old one stands with its own unit.
         (LineId::Timing, new, old) if std::mem::discriminant(&new) != std::mem::discriminant(&old) => {

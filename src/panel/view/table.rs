@@ -111,7 +111,7 @@ pub fn draw(state: &State, scene: &Scene<'_>, area: Rect, pen: &mut Pen<'_>) {
     let grid = grid(state, scene, area);
     let theme = pen.theme;
     let volume_unit = if grid.base.settings.control() == Control::Pressure { "cmH2O" } else { "mL" };
-    pen.text(area, 0, 0, &format!("{volume_unit}\\/min"), theme.quiet());
+    pen.text(area, 0, 0, &format!("{volume_unit}|/min"), theme.quiet());
     for (x, rate) in (MARGIN + 1..).step_by(usize::from(CELL)).zip(&grid.rates) {
         pen.right(area, x + CELL - 1, 0, &number(*rate, 1), theme.heading());
     }
