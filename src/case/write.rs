@@ -127,7 +127,9 @@ fn plan(entry: &Entry) -> Lines {
         [("half_interval", plan.half_interval_mmhg), ("wide_interval", plan.wide_interval_mmhg)]
     {
         if let Some([low, high]) = interval {
-            lines.push((name, format!("[{}, {}]", show::number(low, 2), show::number(high, 2))));
+            let interval = format!("[{}, {}]", show::number(low, 2), show::number(high, 2));
+            let settle = lines.iter().position(|(name, _)| *name == Key::SettleMinutes.name());
+            lines.insert(settle.unwrap_or(lines.len()), (name, interval));
         }
     }
     lines

@@ -60,8 +60,21 @@ impl Files {
         }
     }
 
+    /// Does what concerns files, and gives what happened; `None` for everything else.
+    pub fn perform(&mut self, state: &State, effect: &Effect) -> Option<Action> {
+        match effect {
+            Effect::Append(entry) => match &state.origin {
+                Origin::File(path) => Some(self.append(path, entry)),
+                Origin::Text { .. } => None,
+            },
+            Effect::Create { path, text, entry } => Some(self.create(path, text, entry)),
+            Effect::WriteNote(path) => Some(write_note(state, path)),
+            Effect::CopyNote | Effect::Mouse(_) | Effect::Suspend | Effect::Quit => None,
+        }
+    }
+
     /// Adds an entry; what happened comes back as an action.
-    pub fn append(&mut self, path: &Path, entry: &Entry) -> Action {
+    fn append(&mut self, path: &Path, entry: &Entry) -> Action {
         if self.hold.is_none() {
             return Action::Failed("Nothing was charted: the file is only read here.".to_owned());
         }
@@ -75,7 +88,7 @@ impl Files {
     }
 
     /// Begins a file; what happened comes back as an action.
-    pub fn create(&mut self, path: &Path, text: &str, entry: &Entry) -> Action {
+    fn create(&mut self, path: &Path, text: &str, entry: &Entry) -> Action {
         match append::create(path, text, entry)
             .and_then(|(bytes, record)| Ok((bytes, record, append::hold(path)?)))
         {
@@ -118,7 +131,7 @@ pub fn note(state: &State) -> Result<String, String> {
 }
 
 /// Writes the note to a new file, for its owner's eyes only; what happened comes back as an action.
-pub fn write_note(state: &State, path: &Path) -> Action {
+fn write_note(state: &State, path: &Path) -> Action {
     let text = match note(state) {
         Ok(text) => text,
         Err(why) => return Action::Failed(why),

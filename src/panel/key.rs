@@ -169,7 +169,9 @@ pub fn action_for(state: &State, event: KeyEvent) -> Option<Action> {
         (When::Look, Press::Sign(letter)) if letter.is_ascii_digit() || matches!(letter, '.' | ',') => {
             Some(Action::Begin(letter))
         }
-        (When::Look, Press::Code(KeyCode::Enter)) if state.view != View::Table => Some(Action::Begin(' ')),
+        (When::Look, Press::Code(KeyCode::Enter)) => {
+            Some(if state.view == View::Table { Action::Accept } else { Action::Begin(' ') })
+        }
         (_, press) if when.types() => edit(press).map(Action::Edit),
         _ => None,
     }

@@ -104,18 +104,13 @@ fn perform(state: &mut State, action: Action, outside: &mut Outside) -> io::Resu
                 leaving = true;
                 None
             }
-            Some(Effect::Append(entry)) => {
-                let path = super::update::path_of(state).map(std::path::Path::to_path_buf);
-                path.map(|path| outside.files.append(&path, &entry))
-            }
-            Some(Effect::Create { path, text, entry }) => Some(outside.files.create(&path, &text, &entry)),
-            Some(Effect::WriteNote(path)) => Some(effect::write_note(state, &path)),
             Some(Effect::CopyNote) => Some(copy_note(state)),
             Some(Effect::Mouse(on)) => {
                 terminal::mouse(on)?;
                 None
             }
             Some(Effect::Suspend) => None,
+            Some(other) => outside.files.perform(state, &other),
         };
     }
     keep(state, outside, leaving);

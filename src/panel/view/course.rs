@@ -17,8 +17,11 @@ pub fn draw(scene: &Scene<'_>, area: Rect, pen: &mut Pen<'_>) {
         pen.wrapped(area, 0, said, pen.theme.plain());
         return;
     };
+    let small = area.height < 6;
     let words: Vec<String> = course_line::words(course, pen.face)
         .iter()
+        // On a small screen only when to draw the gas is said.
+        .skip(usize::from(small))
         .flat_map(|line| lines(line, area.width.saturating_sub(2)))
         .collect();
     let below = u16::try_from(words.len()).unwrap_or(2).min(area.height.saturating_sub(3).max(1));
@@ -35,14 +38,17 @@ pub fn draw(scene: &Scene<'_>, area: Rect, pen: &mut Pen<'_>) {
     let (least, most) =
         ends.into_iter().fold((f64::INFINITY, 0.0_f64), |(low, high), p| (low.min(p), high.max(p)));
     let y = [(least - 3.0).max(0.0), (most + 3.0).min(170.0).max(least + 10.0)];
-    pen.text(
-        above,
-        1,
-        0,
-        "PaCO2 over the next hour; between the outer lines 9 gases in 10",
-        pen.theme.quiet(),
-    );
-    let place = Rect { y: above.y + 1, height: above.height.saturating_sub(1), ..above };
+    let title = u16::from(!small);
+    if !small {
+        pen.text(
+            above,
+            1,
+            0,
+            "PaCO2 over the next hour; between the outer lines 9 gases in 10",
+            pen.theme.quiet(),
+        );
+    }
+    let place = Rect { y: above.y + title, height: above.height.saturating_sub(title), ..above };
     let mut plot = Plot::new(place, [0.0, 60.0], y);
     if let Some(band) = scene.band_mmhg() {
         plot.shade(band);

@@ -148,6 +148,10 @@ fn shown(id: LineId, dialled: &Dialled, scene: &Scene<'_>, pen: &Pen<'_>) -> Str
         Held::Number(value) => {
             match id.key(dialled.settings.timing).map(crate::quantity::input::Key::input) {
                 Some(input) if input.dimension == Dimension::Ratio => ratio(value),
+            // A pressure matched to a volume is rarely whole, and what is shown is what is forecast.
+            Some(input) if input.dimension == Dimension::AirwayPressure && (value - value.round()).abs() > 0.05 => {
+                number(value, 1)
+            }
                 Some(input) => pen.face.value(value, input.dimension),
                 None => String::new(),
             }
@@ -243,6 +247,8 @@ fn one(id: LineId, state: &State, scene: &Scene<'_>, area: Rect, y: u16, pen: &m
         }
         _ => shown(id, &scene.now_dialled, scene, pen),
     };
+    // The longest word with its arrows needs some of the column of now.
+    let now_end = if marked && id == LineId::Control { now_end - 4 } else { now_end };
     pen.right(area, now_end, y, &now, theme.plain());
     let tried = shown(id, &dialled, scene, pen);
     let star = if changed { "*" } else { "" };
