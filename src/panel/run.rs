@@ -87,7 +87,9 @@ fn until_left(state: &mut State, outside: &mut Outside) -> io::Result<()> {
             next = if event::poll(Duration::ZERO)? { Some(event::read()?) } else { None };
         }
         if redraw_all {
-            outside.screen.clear()?;
+            // Not `clear`, which asks the terminal where its cursor is and fails where none answers.
+            let size = outside.screen.size()?;
+            outside.screen.resize(Rect::new(0, 0, size.width, size.height))?;
         }
         draw(state, outside)?;
     }

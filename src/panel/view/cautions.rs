@@ -25,7 +25,8 @@ fn of_limit(limit: &LimitVerdict, face: Face) -> String {
         limit.value.map_or_else(|| "unknown".to_owned(), |value| face.value(value, dimension(limit.id)));
     let words = limit.id.words();
     let over = limit.max.zip(limit.value).is_some_and(|(max, value)| value > max);
-    format!("{words} {value} is beyond {}: {}.", bounds(limit, face), remedy(limit.id, over))
+    let bounds = bounds(limit, face).replace(" 1/min", "/min");
+    format!("{words} {value} is beyond {bounds}: {}.", remedy(limit.id, over))
 }
 
 /// What brings a value back inside, common practice.

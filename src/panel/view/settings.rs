@@ -248,7 +248,7 @@ fn one(id: LineId, state: &State, scene: &Scene<'_>, area: Rect, y: u16, pen: &m
         _ => shown(id, &scene.now_dialled, scene, pen),
     };
     // The longest word with its arrows needs some of the column of now.
-    let now_end = if marked && id == LineId::Control { now_end - 4 } else { now_end };
+    let now_end = if id == LineId::Control { now_end - if marked { 4 } else { 1 } } else { now_end };
     pen.right(area, now_end, y, &now, theme.plain());
     let tried = shown(id, &dialled, scene, pen);
     let star = if changed { "*" } else { "" };
