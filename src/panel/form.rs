@@ -125,7 +125,7 @@ impl Form {
             });
         }
         if !self.slips.is_empty() || !self.whole.is_empty() {
-            self.to_first_slip();
+            self.mark_first_slip();
             return None;
         }
         let mut draft = draft_of(record);
@@ -136,20 +136,20 @@ impl Form {
             Err(faults) => {
                 for fault in faults {
                     let slip = Slip { message: fault.message, help: fault.help };
-                    let here = fault.places.iter().filter(|place| place.entry == Some(number));
-                    let field = here.filter_map(|place| FieldId::at(place.table, place.key)).next();
+                    let mut here = fault.places.iter().filter(|place| place.entry == Some(number));
+                    let field = here.find_map(|place| FieldId::at(place.table, place.key));
                     match field {
                         Some(id) => self.slips.push((id, slip)),
                         None => self.whole.push(slip),
                     }
                 }
-                self.to_first_slip();
+                self.mark_first_slip();
                 None
             }
         }
     }
 
-    fn to_first_slip(&mut self) {
+    fn mark_first_slip(&mut self) {
         let first = self.fields.iter().position(|field| self.slips.iter().any(|(id, _)| *id == field.id));
         self.at = first.unwrap_or(self.at);
     }

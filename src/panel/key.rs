@@ -108,7 +108,7 @@ pub enum Press {
 }
 
 impl Press {
-    /// The press of an event; `None` for releases and chords that are not used. AltGr arrives as Ctrl with Alt on some
+    /// The press of an event; `None` for releases and chords that are not used. `AltGr` arrives as Ctrl with Alt on some
     /// systems and is taken as the letter it gives.
     pub fn of(event: KeyEvent) -> Option<Self> {
         if event.kind == KeyEventKind::Release {

@@ -101,7 +101,7 @@ fn perform(state: &mut State, action: Action, outside: &mut Outside) -> io::Resu
     let mut leaving = false;
     while let Some(action) = next.take() {
         next = match update(state, action) {
-            None => None,
+            None | Some(Effect::Suspend) => None,
             Some(Effect::Quit) => {
                 leaving = true;
                 None
@@ -111,7 +111,6 @@ fn perform(state: &mut State, action: Action, outside: &mut Outside) -> io::Resu
                 terminal::mouse(on)?;
                 None
             }
-            Some(Effect::Suspend) => None,
             Some(other) => outside.files.perform(state, &other),
         };
     }

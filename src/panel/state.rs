@@ -107,6 +107,7 @@ impl View {
     }
 
     /// The one `by` places on, around.
+    #[must_use]
     pub fn step(self, by: isize) -> Self {
         let at = Self::ALL.iter().position(|view| *view == self).unwrap_or(0);
         let count = Self::ALL.len();

@@ -50,8 +50,8 @@ pub fn update(state: &mut State, action: Action) -> Option<Effect> {
         Action::Chart => chart::ask(state),
         Action::Profiles => state.mode = Mode::Profiles { chosen: 0 },
         Action::Note => state.mode = Mode::Note,
-        Action::NoteToFile => return leave::note(state, true),
-        Action::NoteToClipboard => return leave::note(state, false),
+        Action::NoteToFile => return Some(leave::note(state, true)),
+        Action::NoteToClipboard => return Some(leave::note(state, false)),
         Action::Help => state.mode = Mode::Help { query: Input::default(), chosen: 0 },
         Action::Leave => return leave::ask(state),
         Action::LeaveAnyway => {
@@ -171,12 +171,11 @@ fn accept(state: &mut State) -> Option<Effect> {
         }
         Mode::Typing(input) => dial::typed(state, input),
         Mode::Walk { rate_per_min, volume } => dial::take(state, rate_per_min, volume),
-        Mode::Slots => {}
+        Mode::Slots | Mode::Note => {}
         Mode::Chart { dialled } => return chart::accept(state, dialled),
         Mode::Naming { name, entry } => return chart::named(state, name, entry),
         Mode::Form(form) => return chart::form(state, form),
         Mode::Profiles { chosen } => choose_profile(state, chosen),
-        Mode::Note => {}
         Mode::Help { query, chosen } => {
             return help::chosen(query.value(), chosen).and_then(|action| update(state, action));
         }
@@ -268,15 +267,14 @@ fn paste(state: &mut State, text: &str) {
 
 fn choose_profile(state: &mut State, chosen: usize) {
     let preset = chosen.checked_sub(1).and_then(|at| PROFILES.get(at));
-    let profile = match preset {
+    let read = preset.map(|preset| (preset.name, read::profile(preset.text.as_bytes())));
+    let profile = match read {
         None => None,
-        Some(preset) => match read::profile(preset.text.as_bytes()) {
-            Ok(profile) => Some(profile),
-            Err(_) => {
-                state.message = Some(format!("The built-in profile {} is faulty; report this.", preset.name));
-                return;
-            }
-        },
+        Some((_, Ok(profile))) => Some(profile),
+        Some((name, Err(_))) => {
+            state.message = Some(format!("The built-in profile {name} is faulty; report this."));
+            return;
+        }
     };
     let name = profile.as_ref().unwrap_or(state.charted.profile()).name.clone();
     let turned = super::state::Turned { profile, ..state.turned.clone() };

@@ -129,13 +129,13 @@ fn above_foot(
 ) -> Option<Position> {
     let whole = layout.whole;
     match &state.mode {
-        Mode::Help { query, chosen } => return help::draw(query, *chosen, state, whole, pen),
+        Mode::Help { query, chosen } => return Some(help::draw(query, *chosen, state, whole, pen)),
         Mode::Form(form) => return form::draw(form, state, whole, pen),
         Mode::Profiles { chosen } => return ask::profiles(*chosen, state, whole, pen),
-        Mode::Chart { dialled } => return ask::chart(*dialled, state, whole, pen),
-        Mode::Naming { name, entry } => return ask::naming(name, entry, state, whole, pen),
-        Mode::Recover(kept) => return ask::recover(kept, whole, pen),
-        Mode::Leave(form) => return ask::leave(form, whole, pen),
+        Mode::Chart { dialled } => return Some(ask::chart(*dialled, state, whole, pen)),
+        Mode::Naming { name, entry } => return Some(ask::naming(name, entry, state, whole, pen)),
+        Mode::Recover(kept) => return Some(ask::recover(kept, whole, pen)),
+        Mode::Leave(form) => return Some(ask::leave(form, whole, pen)),
         Mode::Look | Mode::Typing(_) | Mode::Walk { .. } | Mode::Slots | Mode::Note => {}
     }
     head::draw(state, scene, layout, pen);

@@ -44,10 +44,10 @@ pub fn recover(state: &mut State, kept: &Kept) {
 }
 
 /// The note of what is shown, to a file or to the terminal's clipboard.
-pub fn note(state: &mut State, to_file: bool) -> Option<Effect> {
+pub fn note(state: &State, to_file: bool) -> Effect {
     if !to_file {
-        return Some(Effect::CopyNote);
+        return Effect::CopyNote;
     }
     let case = path_of(state).map_or_else(|| suggested_name(state).into(), std::path::Path::to_path_buf);
-    Some(Effect::WriteNote(case.with_extension("note.txt")))
+    Effect::WriteNote(case.with_extension("note.txt"))
 }

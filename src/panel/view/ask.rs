@@ -49,7 +49,7 @@ pub fn profiles(chosen: usize, state: &State, area: Rect, pen: &mut Pen<'_>) -> 
 }
 
 /// What will be written.
-pub fn chart(dialled: bool, state: &State, area: Rect, pen: &mut Pen<'_>) -> Option<Position> {
+pub fn chart(dialled: bool, state: &State, area: Rect, pen: &mut Pen<'_>) -> Position {
     let page = page(area, "Chart this trial: what will be added to the record", pen);
     let mut y = 0;
     match chart::entry(state, dialled) {
@@ -74,11 +74,11 @@ pub fn chart(dialled: bool, state: &State, area: Rect, pen: &mut Pen<'_>) -> Opt
             pen.text(page, 0, y + 1, &to, pen.theme.quiet());
         }
     }
-    Some(Position { x: page.x + 1, y: page.y })
+    Position { x: page.x + 1, y: page.y }
 }
 
 /// A file name.
-pub fn naming(name: &Input, entry: &Entry, state: &State, area: Rect, pen: &mut Pen<'_>) -> Option<Position> {
+pub fn naming(name: &Input, entry: &Entry, state: &State, area: Rect, pen: &mut Pen<'_>) -> Position {
     let page = page(area, "A file for this record", pen);
     let why = format!(
         "{} has no file of its own. A new file begins with it and holds this entry:",
@@ -93,11 +93,11 @@ pub fn naming(name: &Input, entry: &Entry, state: &State, area: Rect, pen: &mut 
         pen.text(page, 0, row, line, pen.theme.plain());
     }
     let at = u16::try_from(name.visual_cursor()).unwrap_or(0);
-    Some(Position { x: page.x + x + at, y: page.y + y + 1 })
+    Position { x: page.x + x + at, y: page.y + y + 1 }
 }
 
 /// Something typed before is offered.
-pub fn recover(kept: &Kept, area: Rect, pen: &mut Pen<'_>) -> Option<Position> {
+pub fn recover(kept: &Kept, area: Rect, pen: &mut Pen<'_>) -> Position {
     let page = page(area, "Typed before and not charted", pen);
     let mut y =
         pen.wrapped(page, 0, "The panel ended before this was charted. Bring it back?", pen.theme.plain())
@@ -113,11 +113,11 @@ pub fn recover(kept: &Kept, area: Rect, pen: &mut Pen<'_>) -> Option<Position> {
         "Enter brings it back · Esc begins without it and throws it away",
         pen.theme.plain(),
     );
-    Some(Position { x: page.x, y: page.y + y + 1 })
+    Position { x: page.x, y: page.y + y + 1 }
 }
 
 /// Leaving with something typed.
-pub fn leave(form: &Form, area: Rect, pen: &mut Pen<'_>) -> Option<Position> {
+pub fn leave(form: &Form, area: Rect, pen: &mut Pen<'_>) -> Position {
     let page = page(area, "Not charted yet", pen);
     let mut y = pen.wrapped(
         page,
@@ -130,7 +130,7 @@ pub fn leave(form: &Form, area: Rect, pen: &mut Pen<'_>) -> Option<Position> {
         y += 1;
     }
     pen.text(page, 0, y + 1, "y leaves without charting · Esc stays", pen.theme.plain());
-    Some(Position { x: page.x, y: page.y + y + 1 })
+    Position { x: page.x, y: page.y + y + 1 }
 }
 
 /// What keeps a record from being forecast, and what to do.

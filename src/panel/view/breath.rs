@@ -3,7 +3,7 @@
 use ratatui::layout::Rect;
 use ratatui::style::Style;
 
-use super::pen::Pen;
+use super::pen::{Pen, cells};
 use crate::panel::scene::Scene;
 use crate::planning::baseline::gas_exchange::SeriesEvidence;
 use crate::planning::outcome::State;
@@ -47,7 +47,7 @@ pub fn draw(scene: &Scene<'_>, area: Rect, pen: &mut Pen<'_>) {
                 let from = (done / most * f64::from(room)).round();
                 done += ml;
                 let to = (done / most * f64::from(room)).round();
-                let bar = sign.to_string().repeat((to - from).max(0.0) as usize);
+                let bar = sign.to_string().repeat(cells(to - from));
                 x = pen.text(area, x, y, &bar, style);
             }
             if row == 0 {

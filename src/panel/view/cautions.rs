@@ -32,10 +32,11 @@ fn of_limit(limit: &LimitVerdict, face: Face) -> String {
 /// What brings a value back inside, common practice.
 const fn remedy(id: LimitId, over: bool) -> &'static str {
     match (id, over) {
-        (LimitId::TidalVolumePerKg, true) => "lower the tidal volume or the inspiratory pressure",
+        (LimitId::TidalVolumePerKg, true) | (LimitId::DrivingPressure, _) => {
+            "lower the tidal volume or the inspiratory pressure"
+        }
         (LimitId::TidalVolumePerKg, false) => "raise the tidal volume or the inspiratory pressure",
         (LimitId::Plateau, _) => "lower tidal volume, inspiratory pressure, PEEP or trapping",
-        (LimitId::DrivingPressure, _) => "lower the tidal volume or the inspiratory pressure",
         (LimitId::Rate, true) => "lower the rate",
         (LimitId::Rate, false) => "raise the rate",
         (LimitId::AutoPeep | LimitId::ExpiratoryTimeConstants, _) => {
@@ -43,9 +44,8 @@ const fn remedy(id: LimitId, over: bool) -> &'static str {
         }
         (LimitId::MechanicalPower | LimitId::LoadIndex, _) => "lower the rate, the volume or the pressure",
         (LimitId::Ph, false) => "clear more CO2, or treat what is metabolic",
-        (LimitId::Ph, true) => "clear less CO2",
+        (LimitId::Ph, true) | (LimitId::Paco2, false) => "clear less CO2",
         (LimitId::Paco2, true) => "clear more CO2",
-        (LimitId::Paco2, false) => "clear less CO2",
         (LimitId::Paco2FallPerHour, _) => "change in smaller steps",
     }
 }

@@ -11,7 +11,7 @@ use crate::panel::state::State;
 const NAME: u16 = 22;
 
 /// Draws the help; gives where the cursor stands.
-pub fn draw(query: &Input, chosen: usize, _: &State, area: Rect, pen: &mut Pen<'_>) -> Option<Position> {
+pub fn draw(query: &Input, chosen: usize, _: &State, area: Rect, pen: &mut Pen<'_>) -> Position {
     let theme = pen.theme;
     pen.rule(area, 0, "Keys, and what each line means");
     let x = pen.text(area, 1, 1, "search: ", theme.heading());
@@ -47,7 +47,7 @@ pub fn draw(query: &Input, chosen: usize, _: &State, area: Rect, pen: &mut Pen<'
     for (y, line) in (1..foot.height).zip(below) {
         pen.text(foot, 1, y, &line, theme.plain());
     }
-    Some(cursor)
+    cursor
 }
 
 fn details(found: &Found) -> Vec<String> {

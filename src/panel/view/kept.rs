@@ -19,6 +19,8 @@ const NAME: u16 = 18;
 /// Width of a column.
 const COLUMN: u16 = 13;
 
+/// One row: its name, and what it says of a column.
+type Row = (String, Box<dyn Fn(&Dialled, &Outcome) -> String>);
 /// One column: its head, what is dialled, what that leads to.
 type Column = (String, Option<(Dialled, Outcome)>);
 
@@ -41,7 +43,7 @@ pub fn draw(state: &State, scene: &Scene<'_>, area: Rect, pen: &mut Pen<'_>) {
     let columns = columns(state, scene);
     let face = pen.face;
     let unit = face.unit.word();
-    let mut rows: Vec<(String, Box<dyn Fn(&Dialled, &Outcome) -> String>)> = vec![
+    let mut rows: Vec<Row> = vec![
         ("rate × volume".to_owned(), Box::new(|dialled, _| dialled_words(dialled))),
         (
             format!("PaCO2 {unit}"),

@@ -2,7 +2,7 @@
 
 use ratatui::layout::Rect;
 
-use super::pen::Pen;
+use super::pen::{Pen, cells};
 use super::rail::{self, Rail};
 use crate::case::profile::LimitId;
 use crate::note::columns::{bounds, dimension};
@@ -38,7 +38,7 @@ pub fn draw(scene: &Scene<'_>, area: Rect, pen: &mut Pen<'_>) {
     pen.right(area, now_end, 0, " now", pen.theme.heading());
     pen.right(area, try_end, 0, " try", pen.theme.heading());
     if width > 0 {
-        let bound = start + (f64::from(width - 1) * rail::BOUND).round() as u16;
+        let bound = start + u16::try_from(cells(f64::from(width - 1) * rail::BOUND)).unwrap_or(0);
         pen.text(area, bound.saturating_sub(6), 0, " bound ", pen.theme.heading());
     }
     let tried = scene.tried.as_ref().ok().map(|tried| tried.outcome.limits.as_slice()).unwrap_or_default();

@@ -87,3 +87,13 @@ pub fn lines(text: &str, width: u16) -> Vec<String> {
     }
     textwrap::wrap(text, usize::from(width)).into_iter().map(std::borrow::Cow::into_owned).collect()
 }
+
+/// A number of cells or dots: rounded, never below 0.
+#[allow(
+    clippy::cast_possible_truncation,
+    clippy::cast_sign_loss,
+    reason = "screens are smaller than 2^16 cells, and the clamp keeps the sign"
+)]
+pub fn cells(value: f64) -> usize {
+    value.round().clamp(0.0, f64::from(u16::MAX)) as usize
+}

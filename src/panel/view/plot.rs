@@ -2,7 +2,7 @@
 
 use ratatui::layout::Rect;
 
-use super::pen::Pen;
+use super::pen::{Pen, cells};
 
 /// Dots of a cell, by column and row within it, as Braille patterns number them.
 const DOTS: [[u8; 4]; 2] = [[0x01, 0x02, 0x04, 0x40], [0x08, 0x10, 0x20, 0x80]];
@@ -52,8 +52,7 @@ impl Plot {
         }
         let across = Self::share(x, self.x)? * (self.columns() - 1) as f64;
         let down = (1.0 - Self::share(y, self.y)?) * (self.height * 4 - 1) as f64;
-        // Both lie between 0 and the last dot.
-        Some((across.round() as usize, down.round() as usize))
+        Some((cells(across), cells(down)))
     }
 
     fn set(&mut self, column: usize, row: usize) {

@@ -1,5 +1,7 @@
 //! Rails: a value drawn on a line, now and try.
 
+use super::pen::cells;
+
 /// A row of signs.
 #[derive(Debug, Clone, PartialEq, Eq)]
 pub struct Rail {
@@ -15,8 +17,7 @@ impl Rail {
     /// The cell of a place between 0 and 1; outside, the end cell.
     fn cell(&self, place: f64) -> usize {
         let last = self.signs.len().saturating_sub(1);
-        // Between 0 and the last cell by the clamp.
-        (place.clamp(0.0, 1.0) * last as f64).round() as usize
+        cells(place.clamp(0.0, 1.0) * last as f64)
     }
 
     /// Puts a sign at a place.

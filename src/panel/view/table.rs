@@ -2,7 +2,7 @@
 
 use ratatui::layout::{Position, Rect};
 
-use super::pen::Pen;
+use super::pen::{Pen, cells};
 use crate::case::entry::Control;
 use crate::case::profile::LimitId;
 use crate::panel::action::Action;
@@ -51,8 +51,7 @@ fn around(middle: f64, step: f64, [low, high]: [f64; 2], count: usize) -> Vec<f6
     let most = (high / step).floor();
     let first = (whole - (count / 2.0).floor()).min(most - count + 1.0).max(least);
     let last = (first + count - 1.0).min(most);
-    let cells = (last - first).max(-1.0) as usize + 1;
-    (0..cells).map(|n| (first + n as f64) * step).collect()
+    (0..cells(last - first + 1.0)).map(|n| (first + n as f64) * step).collect()
 }
 
 fn grid(state: &State, scene: &Scene<'_>, area: Rect) -> Grid {
