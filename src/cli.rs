@@ -3,7 +3,9 @@
 mod answer;
 mod arguments;
 mod bedside;
+mod chart;
 pub mod checked;
+mod clock;
 pub mod complaint;
 #[cfg(feature = "panel")]
 mod panel;
@@ -94,6 +96,7 @@ fn dispatch(matches: &ArgMatches) -> Said {
     let said = match matches.subcommand() {
         Some(("plan", matches)) => answer::plan(matches, colour),
         Some(("forecast", matches)) => answer::forecast(matches, colour),
+        Some(("chart", matches)) => chart::chart(matches, colour),
         Some(("review", matches)) => review::review(matches, colour),
         Some(("check", matches)) => answer::check(matches, colour),
         Some(("profiles", matches)) => answer::profiles(matches, colour),

@@ -71,5 +71,5 @@ pub fn open(source: Source, options: Options) -> io::Result<()> {
     state.face = options.face;
     state.mouse = options.mouse;
     state.theme = Theme { depth, ground };
-    run::run(state, source.bytes)
+    run::run(state, &source.bytes)
 }

@@ -9,3 +9,4 @@ pub mod energy;
 pub mod oxygen;
 pub mod root;
 pub mod stores;
+pub mod weaning;

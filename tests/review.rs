@@ -1,5 +1,16 @@
 //! `review` on open ICU gases, and on files that are wrong.
 
+#![allow(
+    clippy::unwrap_used,
+    clippy::panic,
+    clippy::indexing_slicing,
+    clippy::doc_markdown,
+    clippy::cast_precision_loss,
+    clippy::too_many_lines,
+    clippy::format_push_string,
+    clippy::float_cmp,
+    reason = "a test may stop at the first surprise, and its tables are long"
+)]
 use std::fmt::Write as _;
 use std::process::Output;
 
@@ -44,7 +55,8 @@ fn intervals_are_honest_on_open_gases() {
     // 133 consecutive pairs within 12 h stand in the pairs file of the same source; two of the gases file are closer than
     // its rounding of hours.
     let pairs = std::fs::read_to_string(OPEN_PAIRS).unwrap();
-    let pairs = pairs.lines().filter(|line| line.starts_with(|first: char| first.is_ascii_digit())).count() as f64;
+    let pairs =
+        pairs.lines().filter(|line| line.starts_with(|first: char| first.is_ascii_digit())).count() as f64;
     assert!((figure("forecasts") - pairs).abs() <= 6.0, "{} forecasts, {pairs} pairs", figure("forecasts"));
     assert!((0.85..=0.95).contains(&figure("wide_coverage")), "{}", figure("wide_coverage"));
     assert!((0.42..=0.60).contains(&figure("half_coverage")), "{}", figure("half_coverage"));
@@ -92,7 +104,8 @@ fn a_row_is_forecast_as_the_case_file_would() {
         (9, "paco2_low_mmhg"),
         (10, "paco2_high_mmhg"),
     ] {
-        let (row, case): (f64, f64) = (last[column].parse().unwrap(), forecast["trial"][name].as_f64().unwrap());
+        let (row, case): (f64, f64) =
+            (last[column].parse().unwrap(), forecast["trial"][name].as_f64().unwrap());
         assert!((row - case).abs() < 1e-3, "{name}: row {row}, case {case}"); // rows carry three decimals
     }
 }
@@ -114,7 +127,8 @@ fn bad_rows_are_named_counted_and_left_out() {
     let review = json(&["-", "--json"], csv);
     assert_eq!(review["rows"], 9);
     assert_eq!(review["skipped"], 4);
-    let named: Vec<u64> = review["bad_rows"].as_array().unwrap().iter().map(|bad| bad["line"].as_u64().unwrap()).collect();
+    let named: Vec<u64> =
+        review["bad_rows"].as_array().unwrap().iter().map(|bad| bad["line"].as_u64().unwrap()).collect();
     assert_eq!(named, [4, 5, 6, 7]);
     assert!(review["bad_rows"][2]["message"].as_str().unwrap().contains("5.3"));
     assert_eq!(review["fitted"], Value::Null);

@@ -115,32 +115,48 @@ pub fn draft(bytes: &[u8], profiles: Profiles<'_>) -> Result<Typed, Vec<Problem>
 /// # Errors
 /// Everything wrong with it, in the order of the text; more or less than one entry.
 pub fn fragment(bytes: &[u8], number: usize) -> Result<(Entry, Spans), Vec<Problem>> {
+    let (entries, spans) = fragments(bytes, number)?;
+    let mut entries = entries.into_iter();
+    if let (Some(entry), None) = (entries.next(), entries.next()) {
+        return Ok((entry, spans));
+    }
+    let help = "give one [[entry]] at a time, or its tables alone: [settings], [measured], [gas]";
+    let span = spans.of(Place::in_entry(number + 1, "", "")).unwrap_or(0..0);
+    Err(vec![Problem::at(span, "this must be one entry", help)])
+}
+
+/// Reads entries to be added from entry `first` on: each under its `[[entry]]`, or one by its tables alone at the top of
+/// the text.
+///
+/// # Errors
+/// Everything wrong with them, in the order of the text; no entry at all; anything beside entries.
+pub fn fragments(bytes: &[u8], first: usize) -> Result<(Vec<Entry>, Spans), Vec<Problem>> {
     let text = syntax::text(bytes).map_err(|problem| vec![problem])?;
     let (table, slips) = syntax::table(text);
     let mut walk = Walk::default();
-    let entry = match table.get("entry").map(|value| (value.span(), value.get_ref())) {
-        None => Some(walk.entry(number, &table)),
-        Some((_, DeValue::Array(list))) if list.len() == 1 => list
-            .first()
-            .and_then(|only| walk.table(Place::in_entry(number, "", ""), only, "[[entry]]"))
-            .map(|only| walk.entry(number, only)),
-        Some((span, _)) => {
-            let help = "give one [[entry]] at a time, or its tables alone: [settings], [measured], [gas]";
-            walk.problems.push(Problem::at(span, "this must be one entry", help));
-            None
+    let mut entries = Vec::new();
+    match table.get("entry").map(|value| (value.get_ref(), value)) {
+        None => entries.push(walk.entry(first, &table)),
+        Some((DeValue::Array(list), _)) => {
+            for (number, row) in (first..).zip(list) {
+                if let Some(table) = walk.table(Place::in_entry(number, "", ""), row, "[[entry]]") {
+                    entries.push(walk.entry(number, table));
+                }
+            }
+            for key in table.keys().filter(|key| key.get_ref() != "entry") {
+                walk.beside_entries(key);
+            }
         }
-    };
+        Some((_, value)) => walk.table_list(Place::in_entry(first, "", ""), value, "[[entry]]"),
+    }
     if !slips.problems.is_empty() {
         return Err(beside_slips(slips, walk.problems));
     }
-    if walk.problems.is_empty() && table.is_empty() {
+    if walk.problems.is_empty() && (table.is_empty() || entries.is_empty()) {
         let help = "write what is to be charted, for example [gas] and below it paco2 = 52";
         return Err(vec![Problem::at(0..0, "there is nothing to chart", help)]);
     }
-    match entry {
-        Some(entry) if walk.problems.is_empty() => Ok((entry, walk.spans)),
-        _ => Err(in_order(walk.problems)),
-    }
+    if walk.problems.is_empty() { Ok((entries, walk.spans)) } else { Err(in_order(walk.problems)) }
 }
 
 /// Problems in the order of the text.

@@ -37,6 +37,11 @@ pub fn patient_slot(patient: &mut Patient, key: Key) -> Option<&mut Option<f64>>
     PATIENT.iter().find(|slot| slot.key == key).map(|slot| (slot.open)(patient))
 }
 
+/// The field of `key` in `observation`; `None` when it is not a key of observations, or their minute.
+pub fn observation_slot(observation: &mut Observation, key: Key) -> Option<&mut Option<f64>> {
+    OBSERVATION.iter().find(|slot| slot.key == key).map(|slot| (slot.open)(observation))
+}
+
 /// Of a patient.
 pub(super) static PATIENT: [Slot<Patient>; 6] = [
     slot(Key::Height, |it| it.height_cm, |it| &mut it.height_cm),

@@ -1,198 +1,211 @@
-//! One entry as TOML, in the layout that a person would type.
+//! An entry as the text that stands for it in a case file: only what it holds, in the default units.
 
-use std::fmt::Write as _;
+use std::fmt::{Display, Write};
 
-use super::entry::{Aim, BreathingTrial, Control, Entry, FlowPattern, TrialOutcome, TrialSupport};
+use super::entry::{
+    Aim, BreathingTrial, ChartedPlan, Control, Entry, FlowPattern, Observation, TrialOutcome, TrialSupport,
+};
 use super::moment::Moment;
 use super::slots::{ENTRY, OBSERVATION, PLAN, Slot};
 use crate::quantity::input::Key;
-use crate::quantity::show;
 use crate::quantity::unit::Dimension;
 
-/// An entry as text, ready to stand at the end of a case file: it begins with its `[[entry]]` line and ends with a line end.
+/// `entry` as text to stand at the end of a case file, from its `[[entry]]` on; lines end with `\n`.
+///
+/// Reading it gives `entry` back, to the last bit of each number.
+///
+/// ```
+/// use tidewright::case::{entry::Entry, write};
+/// let mut entry = Entry::default();
+/// entry.gas.paco2_mmhg = Some(52.0);
+/// assert_eq!(write::entry(&entry), "[[entry]]\n\n[entry.gas]\npaco2 = 52\n");
+/// ```
 pub fn entry(entry: &Entry) -> String {
-    let mut text = "[[entry]]\n".to_owned();
-    if let Some(at) = entry.at {
-        line(&mut text, "at", &moment(at));
-    }
-    if let Some(by) = &entry.by {
-        line(&mut text, "by", &quoted(by));
-    }
-    table(&mut text, "settings", &settings(entry));
-    table(&mut text, "measured", &numbers(&ENTRY, entry, "measured"));
-    let mut gas = numbers(&ENTRY, entry, "gas");
-    if let Some(drawn_at) = entry.gas.drawn_at {
-        gas.insert(0, ("drawn_at", moment(drawn_at)));
-    }
-    table(&mut text, "gas", &gas);
-    table(&mut text, "weaning", &numbers(&ENTRY, entry, "weaning"));
+    let mut text = Lines::default();
+    text.header("[[entry]]");
+    text.key("at", entry.at.map(moment));
+    text.key("by", entry.by.as_deref().map(quoted));
+    text.table("settings", &settings(entry));
+    text.table("measured", &numbers(&ENTRY, entry, "measured"));
+    text.table("gas", &gas(entry));
+    text.table("weaning", &numbers(&ENTRY, entry, "weaning"));
     if let Some(trial) = &entry.trial {
-        breathing_trial(&mut text, trial);
+        breathing_trial(trial, &mut text);
     }
-    table(&mut text, "plan", &plan(entry));
-    let mut note = Vec::new();
-    if let Some(words) = &entry.text {
-        note.push(("text", quoted(words)));
+    if let Some(plan) = &entry.plan {
+        text.header("\n[entry.plan]");
+        text.append(&charted_plan(plan));
     }
-    if let Some(number) = entry.amends {
-        note.push(("amends", number.to_string()));
-    }
-    table(&mut text, "note", &note);
-    text
+    let mut note = Lines::default();
+    note.key("text", entry.text.as_deref().map(quoted));
+    note.key("amends", entry.amends);
+    text.table("note", &note);
+    text.text
 }
 
-type Lines = Vec<(&'static str, String)>;
-
-fn line(text: &mut String, key: &str, value: &str) {
-    // Writing into a String cannot fail.
-    let _ = writeln!(text, "{key} = {value}");
+/// Lines of TOML.
+#[derive(Default)]
+struct Lines {
+    text: String,
 }
 
-fn table(text: &mut String, name: &str, lines: &Lines) {
-    if lines.is_empty() {
-        return;
+impl Lines {
+    fn header(&mut self, header: &str) {
+        self.text.push_str(header);
+        self.text.push('\n');
     }
-    let _ = writeln!(text, "\n[entry.{name}]");
-    for (key, value) in lines {
-        line(text, key, value);
+
+    fn key(&mut self, key: &str, value: Option<impl Display>) {
+        if let Some(value) = value {
+            // Writing to a string cannot fail.
+            let _ = writeln!(self.text, "{key} = {value}");
+        }
     }
-}
 
-/// A string as TOML quotes it.
-fn quoted(text: &str) -> String {
-    toml::Value::String(text.to_owned()).to_string()
-}
+    fn append(&mut self, other: &Self) {
+        self.text.push_str(&other.text);
+    }
 
-/// An instant with the offset it was charted with.
-fn moment(moment: Moment) -> String {
-    let seconds = moment.offset.seconds();
-    let sign = if seconds < 0 { '-' } else { '+' };
-    let (hours, minutes) = (seconds.abs() / 3600, seconds.abs() / 60 % 60);
-    let clock = moment.offset.to_datetime(moment.instant).strftime("%Y-%m-%dT%H:%M:%S");
-    format!("{clock}{sign}{hours:02}:{minutes:02}")
-}
-
-/// A number as it was typed, to a hundredth of its last digit.
-fn number(key: Key, value: f64) -> String {
-    let input = key.input();
-    match input.dimension {
-        Dimension::Ratio => quoted(&show::ratio(value)),
-        Dimension::Time => quoted(&format!("{} s", show::number(value, 4))),
-        _ => show::number(value, input.digits + 2),
+    /// A table of an entry, when there is anything in it.
+    fn table(&mut self, name: &str, keys: &Self) {
+        if !keys.text.is_empty() {
+            self.header(&format!("\n[entry.{name}]"));
+            self.append(keys);
+        }
     }
 }
 
 fn numbers<T>(slots: &[Slot<T>], whole: &T, table: &str) -> Lines {
-    slots
-        .iter()
-        .filter(|slot| slot.key.input().table == table)
-        .filter_map(|slot| Some((slot.key.name(), number(slot.key, (slot.get)(whole)?))))
-        .collect()
+    let mut lines = Lines::default();
+    for slot in slots.iter().filter(|slot| slot.key.input().table == table) {
+        let dimension = slot.key.input().dimension;
+        lines.key(slot.key.name(), (slot.get)(whole).map(|value| number(value, dimension)));
+    }
+    lines
+}
+
+/// A number in its default unit, with as many digits as it takes to read the same number back.
+fn number(value: f64, dimension: Dimension) -> String {
+    if dimension != Dimension::Ratio {
+        return value.to_string();
+    }
+    let inverse = 1.0 / value;
+    // Expiration over inspiration; written the way round that has whole parts.
+    if value < 1.0 && (1.0 / inverse).to_bits() == value.to_bits() {
+        format!("\"{inverse}:1\"")
+    } else {
+        format!("\"1:{value}\"")
+    }
+}
+
+/// A time with its offset, as TOML has it: `2026-03-04T08:10:00+01:00`.
+fn moment(moment: Moment) -> String {
+    let minutes = moment.offset.seconds() / 60;
+    let sign = if minutes < 0 { '-' } else { '+' };
+    // TOML knows offsets of whole minutes only; the instant is the same whatever the offset.
+    let offset = jiff::tz::Offset::from_seconds(minutes * 60).unwrap_or(jiff::tz::Offset::UTC);
+    let clock = offset.to_datetime(moment.instant).strftime("%Y-%m-%dT%H:%M:%S%.f");
+    let minutes = minutes.abs();
+    format!("{clock}{sign}{:02}:{:02}", minutes / 60, minutes % 60)
+}
+
+/// Text as a TOML basic string on one line; whatever it holds, it cannot end the string or the line.
+pub fn quoted(text: &str) -> String {
+    let mut quoted = String::with_capacity(text.len() + 2);
+    quoted.push('"');
+    for letter in text.chars() {
+        match letter {
+            '"' => quoted.push_str("\\\""),
+            '\\' => quoted.push_str("\\\\"),
+            '\n' => quoted.push_str("\\n"),
+            '\t' => quoted.push_str("\\t"),
+            '\r' => quoted.push_str("\\r"),
+            control if control.is_control() => {
+                let _ = write!(quoted, "\\u{:04X}", u32::from(control));
+            }
+            other => quoted.push(other),
+        }
+    }
+    quoted.push('"');
+    quoted
 }
 
 fn settings(entry: &Entry) -> Lines {
-    let mut lines = Vec::new();
-    if let Some(control) = entry.settings.control {
-        let word = match control {
-            Control::Volume => "volume",
-            Control::Pressure => "pressure",
-            Control::Support => "support",
-        };
-        lines.push(("control", quoted(word)));
-    }
-    lines.extend(numbers(&ENTRY, entry, "settings"));
-    if let Some(pattern) = entry.settings.flow_pattern {
-        let word = match pattern {
-            FlowPattern::Constant => "constant",
-            FlowPattern::Decelerating => "decelerating",
-        };
-        lines.push(("flow_pattern", quoted(word)));
-    }
+    let mut lines = Lines::default();
+    lines.key(
+        "control",
+        entry.settings.control.map(|control| match control {
+            Control::Volume => "\"volume\"",
+            Control::Pressure => "\"pressure\"",
+            Control::Support => "\"support\"",
+        }),
+    );
+    lines.append(&numbers(&ENTRY, entry, "settings"));
+    lines.key(
+        "flow_pattern",
+        entry.settings.flow_pattern.map(|pattern| match pattern {
+            FlowPattern::Constant => "\"constant\"",
+            FlowPattern::Decelerating => "\"decelerating\"",
+        }),
+    );
     lines
 }
 
-fn plan(entry: &Entry) -> Lines {
-    let Some(plan) = &entry.plan else { return Vec::new() };
-    let mut lines = numbers(&PLAN, plan, "plan");
-    if let Some(aim) = plan.aim {
-        let word = match aim {
-            Aim::Rate => "rate",
-            Aim::Volume => "volume",
-            Aim::Gentle => "gentle",
-        };
-        let at = usize::from(plan.target_paco2_mmhg.is_some());
-        lines.insert(at.min(lines.len()), ("aim", quoted(word)));
-    }
-    for (name, interval) in
-        [("half_interval", plan.half_interval_mmhg), ("wide_interval", plan.wide_interval_mmhg)]
-    {
-        if let Some([low, high]) = interval {
-            let interval = format!("[{}, {}]", show::number(low, 2), show::number(high, 2));
-            let settle = lines.iter().position(|(name, _)| *name == Key::SettleMinutes.name());
-            lines.insert(settle.unwrap_or(lines.len()), (name, interval));
-        }
-    }
+fn gas(entry: &Entry) -> Lines {
+    let mut lines = Lines::default();
+    lines.key("drawn_at", entry.gas.drawn_at.map(moment));
+    lines.append(&numbers(&ENTRY, entry, "gas"));
     lines
 }
 
-fn breathing_trial(text: &mut String, trial: &BreathingTrial) {
-    let mut lines: Lines = Vec::new();
-    match trial.support {
-        Some(TrialSupport::Pressure(value)) => lines.push(("support", number(Key::TrialSupport, value))),
-        Some(TrialSupport::TPiece) => lines.push(("support", quoted("t-piece"))),
-        None => {}
-    }
-    if let Some(started_at) = trial.started_at {
-        lines.push(("started_at", moment(started_at)));
-    }
-    if let Some(outcome) = trial.outcome {
-        let word = match outcome {
-            TrialOutcome::Passed => "passed",
-            TrialOutcome::Failed => "failed",
-            TrialOutcome::Stopped => "stopped",
-            TrialOutcome::Running => "running",
-        };
-        lines.push(("outcome", quoted(word)));
-    }
-    if lines.is_empty() {
-        text.push_str("\n[entry.trial]\n");
-    }
-    table(text, "trial", &lines);
+fn breathing_trial(trial: &BreathingTrial, text: &mut Lines) {
+    text.header("\n[entry.trial]");
+    text.key(
+        "support",
+        trial.support.map(|support| match support {
+            TrialSupport::Pressure(cmh2o) => number(cmh2o, Dimension::AirwayPressure),
+            TrialSupport::TPiece => "\"t-piece\"".to_owned(),
+        }),
+    );
+    text.key("started_at", trial.started_at.map(moment));
+    text.key(
+        "outcome",
+        trial.outcome.map(|outcome| match outcome {
+            TrialOutcome::Passed => "\"passed\"",
+            TrialOutcome::Failed => "\"failed\"",
+            TrialOutcome::Stopped => "\"stopped\"",
+            TrialOutcome::Running => "\"running\"",
+        }),
+    );
     for observation in &trial.observations {
-        text.push_str("\n[[entry.trial.observation]]\n");
-        line(text, "minute", &number(Key::ObservedMinute, observation.minute));
-        for (key, value) in numbers(&OBSERVATION, observation, "observation") {
-            line(text, key, &value);
-        }
+        observed(observation, text);
     }
+}
+
+fn observed(observation: &Observation, text: &mut Lines) {
+    text.header("\n[[entry.trial.observation]]");
+    text.key("minute", Some(number(observation.minute, Dimension::Minutes)));
+    text.append(&numbers(&OBSERVATION, observation, "observation"));
+}
+
+fn charted_plan(plan: &ChartedPlan) -> Lines {
+    let mut lines = Lines::default();
+    lines.key(
+        "aim",
+        plan.aim.map(|aim| match aim {
+            Aim::Rate => "\"rate\"",
+            Aim::Volume => "\"volume\"",
+            Aim::Gentle => "\"gentle\"",
+        }),
+    );
+    lines.append(&numbers(&PLAN, plan, "plan"));
+    for (key, interval) in
+        [(Key::HalfInterval, plan.half_interval_mmhg), (Key::WideInterval, plan.wide_interval_mmhg)]
+    {
+        lines.key(key.name(), interval.map(|[low, high]| format!("[{low}, {high}]")));
+    }
+    lines
 }
 
 #[cfg(test)]
-mod tests {
-    use super::*;
-    use crate::case::presets::CASES;
-    use crate::case::{file, read};
-
-    /// The reader is the witness: what it reads from what is written is the entry itself.
-    #[test]
-    fn every_entry_of_every_built_in_case_reads_back_as_itself() {
-        for preset in &CASES {
-            let (record, _) = read::case(preset.text.as_bytes(), &|name| file::profile(name, None)).unwrap();
-            for (number, one) in (1..).zip(record.entries()) {
-                let text = entry(one);
-                let (back, _) = read::fragment(text.as_bytes(), number)
-                    .unwrap_or_else(|problems| panic!("{}: {problems:?}\n{text}", preset.name));
-                assert_eq!(&back, one, "{} entry {number}\n{text}", preset.name);
-            }
-        }
-    }
-
-    #[test]
-    fn words_are_quoted_and_instants_keep_their_offset() {
-        assert_eq!(quoted("a \"b\" \\ c"), r#"'a "b" \ c'"#);
-        let datetime = jiff::civil::datetime(2026, 3, 9, 8, 10, 0, 0);
-        let offset = jiff::tz::Offset::from_seconds(-(3 * 3600 + 1800)).unwrap();
-        let at = Moment { instant: offset.to_timestamp(datetime).unwrap(), offset };
-        assert_eq!(moment(at), "2026-03-09T08:10:00-03:30");
-    }
-}
+mod tests;

@@ -25,8 +25,10 @@ use crate::quantity::show::PressureUnit;
 /// The case shown when none is named.
 pub const DEMONSTRATION: &str = "injured-lungs";
 
-type Answer = Result<Said, Said>;
+/// What a command says, or why it cannot.
+pub type Answer = Result<Said, Said>;
 
+/// How the user wants texts shown.
 pub(super) fn face(matches: &ArgMatches) -> Face {
     let unit = match matches.get_one::<String>("units").map(String::as_str) {
         Some("kPa") => PressureUnit::KPa,
@@ -35,7 +37,11 @@ pub(super) fn face(matches: &ArgMatches) -> Face {
     Face { unit, ascii: matches.get_flag("ascii") }
 }
 
-fn as_json(answer: &impl serde::Serialize) -> Result<String, Said> {
+/// An answer as JSON.
+///
+/// # Errors
+/// It cannot be written so.
+pub fn as_json(answer: &impl serde::Serialize) -> Result<String, Said> {
     json::of(answer).map_err(|error| {
         sentence(&format!("the answer cannot be written as JSON: {error}"), Status::Unreadable)
     })
@@ -64,7 +70,11 @@ fn trial_of(matches: &ArgMatches, colours: Colours) -> Result<Trial, Said> {
     }
 }
 
-fn asked(matches: &ArgMatches, colours: Colours) -> Result<Asked, Said> {
+/// What `--to-paco2` or `--to-ph` ask for.
+///
+/// # Errors
+/// They cannot be read.
+pub fn asked(matches: &ArgMatches, colours: Colours) -> Result<Asked, Said> {
     let complain =
         |problem: Problem| Said::complaint(complaint::draw(&[problem], None, colours.err), Status::BadInput);
     if let Some(text) = matches.get_one::<String>("to_paco2") {

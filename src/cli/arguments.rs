@@ -26,7 +26,7 @@ pub const TRIAL_PATIENT: [&str; 3] = ["co2_production", "compliance", "resistanc
 /// The tables whose keys are bedside flags.
 const BEDSIDE_TABLES: [&str; 4] = ["patient", "settings", "measured", "gas"];
 
-const SAFETY: &str = crate::note::SAFETY;
+pub(super) const SAFETY: &str = crate::note::SAFETY;
 
 /// A flag's name for a key.
 pub fn flag_of(key: &str) -> String {
@@ -60,12 +60,19 @@ fn heading(table: &str) -> &'static str {
     match table {
         "patient" => "The patient (in place of CASE)",
         "settings" => "Settings (with CASE: what to try; without: what is set now)",
-        "measured" => "Measurements (in place of CASE; the first three also what-if with CASE)",
+        "measured" => {
+            "Measurements (in place of CASE; CO2 output, compliance, resistance also as what-if with CASE)"
+        }
         _ => "The arterial gas (in place of CASE)",
     }
 }
 
 fn quantity(input: &'static Input) -> Arg {
+    quantity_under(input, heading(input.table))
+}
+
+/// A quantity's flag under a heading of the help.
+pub fn quantity_under(input: &'static Input, heading: &'static str) -> Arg {
     let unit = input.dimension.unit();
     let words = input.words;
     let range = input.plausible().range();
@@ -73,7 +80,7 @@ fn quantity(input: &'static Input) -> Arg {
         .long(flag_of(input.name))
         .value_name(if unit.is_empty() { "VALUE".to_owned() } else { unit.to_owned() })
         .allow_hyphen_values(true)
-        .help_heading(heading(input.table))
+        .help_heading(heading)
         .help(format!(
             "{}{} ({range}; e.g. {})",
             words.get(..1).unwrap_or("").to_uppercase(),
@@ -92,7 +99,8 @@ fn tried(key: &'static str) -> Arg {
         .help(format!("Try this {}", key.replace('_', " ")))
 }
 
-fn choice(name: &'static str, values: &'static [&'static str], help: &'static str) -> Arg {
+/// A flag that is one of a few words.
+pub fn choice(name: &'static str, values: &'static [&'static str], help: &'static str) -> Arg {
     Arg::new(name).long(flag_of(name)).value_parser(PossibleValuesParser::new(values)).help(help)
 }
 
@@ -202,6 +210,7 @@ pub fn command() -> Command {
         .args(everywhere.map(|arg| arg.global(true)))
         .subcommand(plan_command())
         .subcommand(forecast_command())
+        .subcommand(super::chart::arguments::command())
         .subcommand(review_command())
         .subcommand(
             Command::new("check")

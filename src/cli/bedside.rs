@@ -6,10 +6,12 @@ use std::collections::BTreeMap;
 use clap::ArgMatches;
 
 use super::arguments::{WORDS, bedside_inputs};
+use crate::case::flag;
 use crate::case::problem::Problem;
 use crate::case::read;
 use crate::case::record::Record;
 use crate::case::{file, record::Steadiness};
+use crate::quantity::input::Key;
 
 /// Where a flag's key stands in a case file.
 fn header(table: &str) -> &'static str {
@@ -45,6 +47,15 @@ pub fn record(
     profile: Option<&str>,
     steadiness: Option<Steadiness>,
 ) -> Result<Record, Vec<Problem>> {
+    // Numbers are read as flags first, so that what is wrong with them is said in terms of flags.
+    let astray: Vec<Problem> = given(matches)
+        .into_iter()
+        .filter_map(|(table, key, text)| flag::number(Key::find(table, key)?, Some(1), &text).err())
+        .map(Problem::from)
+        .collect();
+    if !astray.is_empty() {
+        return Err(astray);
+    }
     let mut tables: BTreeMap<&str, Vec<String>> = BTreeMap::new();
     for (table, key, text) in given(matches) {
         tables.entry(header(table)).or_default().push(format!("{key} = {}", quoted(&text)));

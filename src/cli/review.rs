@@ -102,8 +102,9 @@ pub fn review(matches: &ArgMatches, _: Colours) -> Result<Said, Said> {
     }
     let review = reviewer.answer();
     if matches.get_flag("json") {
-        let text = crate::note::json::of(&review)
-            .map_err(|error| sentence(&format!("the answer cannot be written as JSON: {error}"), Status::Unreadable))?;
+        let text = crate::note::json::of(&review).map_err(|error| {
+            sentence(&format!("the answer cannot be written as JSON: {error}"), Status::Unreadable)
+        })?;
         return Ok(Said::answer(text, Status::Done));
     }
     Ok(Said::answer(text::of(&review, within_hours, super::answer::face(matches)), Status::Done))
@@ -113,7 +114,9 @@ fn within(matches: &ArgMatches) -> Result<f64, Said> {
     let Some(text) = matches.get_one::<String>("within") else { return Ok(WITHIN_HOURS) };
     match parse::parse(text, Dimension::Number) {
         Ok(hours) if hours > 0.0 && hours <= 10_000.0 => Ok(hours),
-        _ => Err(sentence(&format!("--within \"{text}\" is not a number of hours above 0"), Status::BadInput)),
+        _ => {
+            Err(sentence(&format!("--within \"{text}\" is not a number of hours above 0"), Status::BadInput))
+        }
     }
 }
 
@@ -134,7 +137,10 @@ fn open(name: &str) -> Result<Box<dyn Read>, Said> {
     }
     let refused = |what: String| sentence(&format!("{name} {what}"), Status::Unreadable);
     let file = File::open(name).map_err(|error| match error.kind() {
-        io::ErrorKind::NotFound => sentence(&format!("there is no file {name}: look at the spelling and the folder"), Status::Unreadable),
+        io::ErrorKind::NotFound => sentence(
+            &format!("there is no file {name}: look at the spelling and the folder"),
+            Status::Unreadable,
+        ),
         _ => refused(format!("cannot be read: {error}")),
     })?;
     if file.metadata().is_ok_and(|facts| facts.is_dir()) {
@@ -144,6 +150,7 @@ fn open(name: &str) -> Result<Box<dyn Read>, Said> {
 }
 
 /// A closed pipe ends quietly.
+#[expect(clippy::needless_pass_by_value, reason = "the shape `or_else` hands it over in")]
 fn quiet_if_closed(error: io::Error) -> Result<(), Said> {
     if error.kind() == io::ErrorKind::BrokenPipe {
         return Err(Said::answer(String::new(), Status::Done));
@@ -153,14 +160,20 @@ fn quiet_if_closed(error: io::Error) -> Result<(), Said> {
 
 impl Reviewer<'_> {
     fn read(&mut self, from: Box<dyn Read>, name: &str) -> Result<(), Said> {
-        let mut reader =
-            csv::ReaderBuilder::new().comment(Some(b'#')).flexible(true).trim(csv::Trim::All).from_reader(from);
+        let mut reader = csv::ReaderBuilder::new()
+            .comment(Some(b'#'))
+            .flexible(true)
+            .trim(csv::Trim::All)
+            .from_reader(from);
         let unreadable = |error: &csv::Error| match error.kind() {
-            csv::ErrorKind::Io(error) => sentence(&format!("{name} cannot be read: {error}"), Status::Unreadable),
+            csv::ErrorKind::Io(error) => {
+                sentence(&format!("{name} cannot be read: {error}"), Status::Unreadable)
+            }
             _ => sentence(&format!("{name} is not a CSV file of text: {error}"), Status::BadInput),
         };
         let header = reader.headers().map_err(|error| unreadable(&error))?.clone();
-        let columns = Columns::find(&header).map_err(|message| sentence(&format!("{name}: {message}"), Status::BadInput))?;
+        let columns = Columns::find(&header)
+            .map_err(|message| sentence(&format!("{name}: {message}"), Status::BadInput))?;
         self.head_of_rows().or_else(quiet_if_closed)?;
         let mut record = csv::StringRecord::new();
         loop {
@@ -169,7 +182,10 @@ impl Reviewer<'_> {
                 Ok(true) => {}
                 Err(error) if matches!(error.kind(), csv::ErrorKind::Utf8 { .. }) => {
                     self.rows += 1;
-                    self.bad(error.position().map_or(0, csv::Position::line), "it is not text in UTF-8".to_owned());
+                    self.bad(
+                        error.position().map_or(0, csv::Position::line),
+                        "it is not text in UTF-8".to_owned(),
+                    );
                     continue;
                 }
                 Err(error) => return Err(unreadable(&error)),
@@ -177,7 +193,7 @@ impl Reviewer<'_> {
             self.rows += 1;
             let line = record.position().map_or(0, csv::Position::line);
             match columns.row(&record, header.len()) {
-                Ok(row) => self.take(row, line)?,
+                Ok(row) => self.take(&row, line)?,
                 Err(message) => self.bad(line, message),
             }
         }
@@ -189,10 +205,17 @@ impl Reviewer<'_> {
             return Err(sentence(&format!("{name} has a header but no row"), Status::BadInput));
         }
         if self.skipped * 2 > self.rows {
-            let first: Vec<String> = self.bad_rows.iter().take(5).map(|bad| format!("line {}: {}", bad.line, bad.message)).collect();
+            let first: Vec<String> = self
+                .bad_rows
+                .iter()
+                .take(5)
+                .map(|bad| format!("line {}: {}", bad.line, bad.message))
+                .collect();
             let text = format!(
                 "{} of {} rows in {name} are bad, so it is not reviewed. The first:\n  {}",
-                self.skipped, self.rows, first.join("\n  ")
+                self.skipped,
+                self.rows,
+                first.join("\n  ")
             );
             return Err(sentence(&text, Status::BadInput));
         }
@@ -206,9 +229,9 @@ impl Reviewer<'_> {
         }
     }
 
-    fn take(&mut self, row: Row, line: u64) -> Result<(), Said> {
+    fn take(&mut self, row: &Row, line: u64) -> Result<(), Said> {
         if self.stay.as_ref().is_none_or(|(id, _)| *id != row.stay) {
-            self.begin(&row, line)?;
+            self.begin(row, line)?;
         }
         let Some((_, stay)) = &mut self.stay else { return Ok(()) };
         stay.know(&row.patient);
@@ -216,7 +239,10 @@ impl Reviewer<'_> {
         if let Some(latest) = stay.latest() {
             let gap = row.gas.hours - latest.hours;
             if gap < 0.0 {
-                let text = format!("line {line}: stay {} goes back in time; sort the file by stay, then by hours", row.stay);
+                let text = format!(
+                    "line {line}: stay {} goes back in time; sort the file by stay, then by hours",
+                    row.stay
+                );
                 return Err(sentence(&text, Status::BadInput));
             }
             if gap <= self.within_hours {
@@ -232,7 +258,7 @@ impl Reviewer<'_> {
             if score.after_change {
                 self.changed.add(&score);
             }
-            self.row_out(&row, &score).or_else(quiet_if_closed)?;
+            self.row_out(row, &score).or_else(quiet_if_closed)?;
         }
         Ok(())
     }
@@ -242,7 +268,10 @@ impl Reviewer<'_> {
         row.stay.hash(&mut hasher);
         let mark = hasher.finish();
         if self.seen.contains(&mark) {
-            let text = format!("line {line}: the rows of stay {} do not stand together; sort the file by stay, then by hours", row.stay);
+            let text = format!(
+                "line {line}: the rows of stay {} do not stand together; sort the file by stay, then by hours",
+                row.stay
+            );
             return Err(sentence(&text, Status::BadInput));
         }
         if self.seen.len() >= REMEMBERED_STAYS {
@@ -264,7 +293,8 @@ impl Reviewer<'_> {
 
     fn row_out(&mut self, row: &Row, score: &Score) -> io::Result<()> {
         let Some(out) = &mut self.rows_out else { return Ok(()) };
-        let at = |p: f64| score.mixture.quantile(p).map_or_else(String::new, |ln| format!("{:.3}", libm::exp(ln)));
+        let at =
+            |p: f64| score.mixture.quantile(p).map_or_else(String::new, |ln| format!("{:.3}", libm::exp(ln)));
         let gas = &row.gas;
         writeln!(
             out,
@@ -288,7 +318,8 @@ impl Reviewer<'_> {
     }
 
     fn complaints(&self) -> String {
-        self.bad_rows.iter().map(|bad| format!("left out, line {}: {}\n", bad.line, bad.message)).collect()
+        let named = self.bad_rows.iter().map(|bad| format!("left out, line {}: {}\n", bad.line, bad.message));
+        named.collect::<Vec<_>>().concat()
     }
 
     fn answer(self) -> Review {

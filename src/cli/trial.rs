@@ -5,10 +5,11 @@ use clap::ArgMatches;
 use super::arguments::{TRIAL_PATIENT, TRIAL_SETTINGS};
 use crate::case::entry::Control;
 use crate::case::fault::Place;
+use crate::case::flag;
 use crate::case::problem::Problem;
 use crate::case::settings::Timing;
 use crate::planning::trial::{Co2Trial, Trial};
-use crate::quantity::input::{Key, Typed};
+use crate::quantity::input::Key;
 use crate::quantity::parse;
 
 /// The trial that the flags name, each flag's id being `prefix` and its key.
@@ -89,11 +90,7 @@ fn flag_problem(key: &'static str, message: impl Into<String>, help: impl Into<S
 /// # Errors
 /// When it cannot be read or is implausible.
 pub fn quantity(text: &str, key: Key) -> Result<f64, Problem> {
-    let input = key.input();
-    let reading = parse::read(text, input.dimension)
-        .map_err(|unread| flag_problem(input.name, unread.to_string(), unread.help()))?;
-    let typed = reading.unit.map_or(Typed::Plain, |unit| Typed::With { number: reading.number, unit });
-    input.accept(reading.value, typed).map_err(|out| flag_problem(input.name, out.message, out.help))
+    flag::number(key, None, text).map_err(Problem::from)
 }
 
 /// "180", "180 mL/min" or "x0.9".

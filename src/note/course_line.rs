@@ -43,7 +43,7 @@ pub fn words(course: &Course, face: Face) -> Vec<String> {
     let settled = if course.settled_minutes > 0.0 {
         format!("Settled after about {:.0} min. ", course.settled_minutes.ceil())
     } else {
-        "Nothing to settle: PaCO2 is there already. ".to_owned()
+        "Nothing to settle. ".to_owned()
     };
     let next = format!("{settled}Draw the next gas {:.0} min after the change.", course.next_gas_minutes);
     vec![at.join(face.dot()), next]

@@ -18,9 +18,7 @@ pub fn of(plan: &Plan, record: &Record, face: Face) -> String {
     lines.extend(patient_lines::gas(record, &plan.baseline, face));
     lines.push(goal(plan, record, face));
     if plan.now.paco2_is == "forecast" {
-        lines.push(
-            "Settings changed since the latest gas: PaCO2 now is a forecast, not a measurement.".to_owned(),
-        );
+        lines.push("Settings changed since the latest gas: PaCO2 now is forecast, not measured.".to_owned());
     }
     lines.push(String::new());
     lines.extend(table(&columns(plan), face));
@@ -40,7 +38,7 @@ pub fn of(plan: &Plan, record: &Record, face: Face) -> String {
         lines.extend(course_line::words(course, face).into_iter().map(|line| format!("  {line}")));
     }
     lines.push(String::new());
-    lines.push("What one step buys from now, and costs".to_owned());
+    lines.push(format!("What one step buys from now, and costs (PaCO2 in {})", face.unit.word()));
     lines.extend(plan.levers.iter().map(|it| lever(it, face)));
     lines.push(String::new());
     lines.push("Where the numbers come from".to_owned());
@@ -173,7 +171,7 @@ fn lever(lever: &Lever, face: Face) -> String {
     };
     let step = format!("{name} {} {}", signed(lever.step, Dimension::Number), lever.unit);
     let Some(paco2) = lever.paco2_change_mmhg else {
-        return format!("  {step:<31} cannot be dialled from here");
+        return format!("  {step:<30} cannot be dialled from here");
     };
     // A tenth of a mmHg tells the levers apart; the forecast itself is not that sharp.
     let tenth = face.unit.from_mmhg(paco2);
@@ -184,7 +182,7 @@ fn lever(lever: &Lever, face: Face) -> String {
         text.contains(|digit: char| matches!(digit, '1'..='9')).then(|| format!("{name} {text}"))
     };
     let buys = [
-        Some(format!("  {step:<31} PaCO2 {tenth:+.digits$} {}", face.unit.word())),
+        Some(format!("  {step:<30} PaCO2 {tenth:+.digits$}")),
         told("pH", lever.ph_change, 2),
         told("driving", lever.driving_pressure_change_cmh2o, 1),
         told("power", lever.mechanical_power_change_j_min, 1),

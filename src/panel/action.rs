@@ -95,8 +95,15 @@ pub enum Action {
         /// Volume (mL) or inspiratory pressure (cmH2O).
         volume: f64,
     },
-    /// An entry was charted: the record as it now is, the file's name.
-    Charted(Box<Record>, std::path::PathBuf),
+    /// An entry was charted.
+    Charted {
+        /// The record as it now is.
+        record: Box<Record>,
+        /// Its file.
+        path: std::path::PathBuf,
+        /// How many entries someone else had added since it was read.
+        meanwhile: usize,
+    },
     /// Something done: a sentence.
     Done(String),
     /// Something failed: a sentence.

@@ -11,6 +11,8 @@ use super::update::{on_scene, suggested_name};
 use crate::case::entry::{Aim, ChartedPlan, Control, Entry, SettingsChange};
 use crate::case::record::Record;
 use crate::case::settings::Timing;
+use crate::planning::answer::SettingsReport;
+use crate::planning::charted::charted;
 use crate::planning::trial::Trial;
 
 /// Asks whether to chart the trial, or says why it cannot be.
@@ -52,7 +54,6 @@ pub fn entry(state: &State, dialled: bool) -> Result<Entry, String> {
 
 fn plan(scene: &Scene<'_>, trial: &Trial) -> Result<ChartedPlan, String> {
     let tried = scene.tried.as_ref().map_err(|fault| fault.message.clone())?;
-    let (settings, interval) = (&tried.dialled.settings, &tried.outcome.interval);
     let volume = trial.tidal_volume_ml.is_some() || trial.inspiratory_pressure_cmh2o.is_some();
     let aim = match (trial.rate_per_min.is_some(), volume) {
         (true, true) => Some(Aim::Gentle),
@@ -60,19 +61,13 @@ fn plan(scene: &Scene<'_>, trial: &Trial) -> Result<ChartedPlan, String> {
         (false, true) => Some(Aim::Volume),
         (false, false) => None,
     };
-    let pair = |low: Option<f64>, high: Option<f64>| Some([hundredths(low?), hundredths(high?)]);
-    Ok(ChartedPlan {
-        target_paco2_mmhg: scene.target.as_ref().ok().map(|target| hundredths(target.paco2_mmhg)),
+    Ok(charted(
+        &SettingsReport::of(&tried.dialled),
+        &tried.outcome,
+        scene.target.as_ref().ok().map(|target| target.paco2_mmhg),
         aim,
-        rate_per_min: Some(settings.rate_per_min),
-        tidal_volume_ml: settings.tidal_volume_ml().map(hundredths),
-        inspiratory_pressure_cmh2o: settings.inspiratory_pressure_cmh2o().map(hundredths),
-        forecast_paco2_mmhg: Some(hundredths(tried.outcome.state.paco2_mmhg)),
-        expected_paco2_mmhg: interval.paco2_expected_mmhg.map(hundredths),
-        half_interval_mmhg: pair(interval.paco2_half_low_mmhg, interval.paco2_half_high_mmhg),
-        wide_interval_mmhg: pair(interval.paco2_low_mmhg, interval.paco2_high_mmhg),
-        settle_minutes: tried.course.as_ref().map(|course| course.settled_minutes.ceil()),
-    })
+        tried.course.as_ref().map(|course| course.settled_minutes),
+    ))
 }
 
 /// Finer than a hundredth nothing is written.
@@ -184,9 +179,14 @@ pub fn named(state: &mut State, name: Input, entry: Box<Entry>) -> Option<Effect
 }
 
 /// Once charted: the record as it is now; what was tried is done with.
-pub fn charted(state: &mut State, record: Record, path: std::path::PathBuf) {
+pub fn done(state: &mut State, record: Record, path: std::path::PathBuf, meanwhile: usize) {
     let number = record.entries().len();
-    state.message = Some(format!("Charted as entry {number} in {}.", path.display()));
+    let others = match meanwhile {
+        0 => String::new(),
+        1 => " Someone else had added an entry meanwhile: look at the record.".to_owned(),
+        more => format!(" Someone else had added {more} entries meanwhile: look at the record."),
+    };
+    state.message = Some(format!("Charted as entry {number} in {}.{others}", path.display()));
     state.charted = record;
     state.origin = Origin::File(path);
     state.turned.trial = Trial::default();

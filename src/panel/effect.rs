@@ -5,7 +5,7 @@ use std::path::{Path, PathBuf};
 
 use super::action::Action;
 use super::state::{Origin, State};
-use crate::case::append::{self, Hold, NotAdded};
+use crate::case::append::{AppendError, Appended, Hold, Seen};
 use crate::case::entry::Entry;
 use crate::note::{forecast_text, plan_text};
 use crate::planning::forecast::Held;
@@ -41,21 +41,21 @@ pub enum Effect {
 /// The case file as it was last read, and the right to chart in it.
 #[derive(Debug, Default)]
 pub struct Files {
-    bytes: Vec<u8>,
-    hold: Option<Hold>,
+    held: Option<(Hold, Seen)>,
 }
 
 impl Files {
-    /// Takes the right to chart in the state's file; where another program has it, the state says so and only reads.
-    pub fn open(state: &mut State, bytes: Vec<u8>) -> Self {
-        let Origin::File(path) = &state.origin else { return Self { bytes, hold: None } };
-        match append::hold(path) {
-            Ok(hold) => Self { bytes, hold: Some(hold) },
+    /// Takes the right to chart in the state's file, which was read as `bytes`; where another program has it, the state
+    /// says so and only reads.
+    pub fn open(state: &mut State, bytes: &[u8]) -> Self {
+        let Origin::File(path) = &state.origin else { return Self::default() };
+        match Hold::take(path) {
+            Ok(hold) => Self { held: Some((hold, Seen::of(bytes))) },
             Err(why) => {
                 let why = lower_first(&why.to_string());
                 state.message = Some(format!("Read only: {why}."));
                 state.read_only = Some(why);
-                Self { bytes, hold: None }
+                Self::default()
             }
         }
     }
@@ -75,13 +75,13 @@ impl Files {
 
     /// Adds an entry; what happened comes back as an action.
     fn append(&mut self, path: &Path, entry: &Entry) -> Action {
-        if self.hold.is_none() {
+        let Some((hold, seen)) = &mut self.held else {
             return Action::Failed("Nothing was charted: the file is only read here.".to_owned());
-        }
-        match append::append(path, &self.bytes, entry) {
-            Ok((bytes, record)) => {
-                self.bytes = bytes;
-                Action::Charted(Box::new(record), path.to_owned())
+        };
+        match hold.append(std::slice::from_ref(entry), seen) {
+            Ok(appended) => {
+                *seen = appended.seen;
+                charted(appended, path)
             }
             Err(why) => not_added(&why),
         }
@@ -89,19 +89,22 @@ impl Files {
 
     /// Begins a file; what happened comes back as an action.
     fn create(&mut self, path: &Path, text: &str, entry: &Entry) -> Action {
-        match append::create(path, text, entry)
-            .and_then(|(bytes, record)| Ok((bytes, record, append::hold(path)?)))
-        {
-            Ok((bytes, record, hold)) => {
-                *self = Self { bytes, hold: Some(hold) };
-                Action::Charted(Box::new(record), path.to_owned())
+        let begun = Hold::take(path).and_then(|hold| Ok((hold.create(text, std::slice::from_ref(entry))?, hold)));
+        match begun {
+            Ok((appended, hold)) => {
+                self.held = Some((hold, appended.seen));
+                charted(appended, path)
             }
             Err(why) => not_added(&why),
         }
     }
 }
 
-fn not_added(why: &NotAdded) -> Action {
+fn charted(appended: Appended, path: &Path) -> Action {
+    Action::Charted { record: Box::new(appended.record), path: path.to_owned(), meanwhile: appended.meanwhile }
+}
+
+fn not_added(why: &AppendError) -> Action {
     Action::Failed(format!("Not charted: {}.", lower_first(&why.to_string())))
 }
 

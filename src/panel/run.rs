@@ -43,7 +43,7 @@ pub fn clock() -> Moment {
 ///
 /// # Errors
 /// When the terminal is lost or refuses.
-pub fn run(mut state: State, bytes: Vec<u8>) -> io::Result<()> {
+pub fn run(mut state: State, bytes: &[u8]) -> io::Result<()> {
     let files = Files::open(&mut state, bytes);
     let kept_at = recovery::place(&state.origin);
     let found = kept_at.as_deref().filter(|_| state.read_only.is_none()).and_then(recovery::load);
@@ -63,6 +63,8 @@ pub fn run(mut state: State, bytes: Vec<u8>) -> io::Result<()> {
 }
 
 fn until_left(state: &mut State, outside: &mut Outside) -> io::Result<()> {
+    // Listen before drawing: a resize during the first drawing would be missed.
+    event::poll(Duration::ZERO)?;
     draw(state, outside)?;
     loop {
         let mut redraw_all = false;

@@ -84,7 +84,7 @@ pub fn update(state: &mut State, action: Action) -> Option<Effect> {
         Action::Edit(request) => edit(state, request),
         Action::Paste(text) => paste(state, &text),
         Action::Take { rate_per_min, volume } => dial::take(state, rate_per_min, volume),
-        Action::Charted(record, path) => chart::charted(state, *record, path),
+        Action::Charted { record, path, meanwhile } => chart::done(state, *record, path, meanwhile),
         Action::Done(said) => {
             state.mode = Mode::Look;
             state.message = Some(said);

@@ -4,9 +4,9 @@ use serde::Serialize;
 
 use super::baseline::gas_exchange::Co2Evidence;
 use super::baseline::mechanics::TrappingEvidence;
+use super::dialled::Dialled;
 use super::forecast::Forecaster;
 use super::outcome::Outcome;
-use super::trial::Dialled;
 use crate::case::entry::Control;
 use crate::physiology::body;
 

@@ -206,12 +206,11 @@ impl Belief {
         let of_heard = self.rooms.is_of(room);
         let grid = self.airway_ml.iter().zip(&self.rooms.ln).zip(&self.x).zip(&self.weight);
         // A grid point that swallows the breath whole puts its mass at infinity.
-        let points = grid.filter(|(((airway, _), _), _)| room > **airway).map(
-            |(((airway, ln_heard), x), weight)| {
+        let points =
+            grid.filter(|(((airway, _), _), _)| room > **airway).map(|(((airway, ln_heard), x), weight)| {
                 let ln_room = if of_heard { *ln_heard } else { libm::log(room - airway) };
                 (*weight, x + shift - ln_room)
-            },
-        );
+            });
         Mixture::new(points, variance.sqrt())
     }
 }

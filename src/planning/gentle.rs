@@ -4,12 +4,12 @@ use std::cmp::Ordering;
 
 use crate::case::profile::{Limit, LimitId};
 
+use super::dialled::Dialled;
 use super::forecast::Forecaster;
 use super::limits::{self, Excess};
-use super::outcome::State;
 use super::solve::{settable_rates, settable_volumes, volume_step};
+use super::state::State;
 use super::target::Target;
-use super::trial::Dialled;
 
 /// What the gentlest pair spares.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]

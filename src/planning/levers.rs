@@ -2,9 +2,9 @@
 
 use serde::Serialize;
 
+use super::dialled::Dialled;
 use super::forecast::Forecaster;
-use super::outcome::State;
-use super::trial::Dialled;
+use super::state::State;
 use crate::case::entry::Control;
 
 /// Steps of rate, 1/min.

@@ -2,7 +2,7 @@
 
 use serde::Serialize;
 
-use super::outcome::State;
+use super::state::State;
 use crate::case::profile::{Limit, LimitId};
 
 /// Closer to its bound than this share of the bound, a value is near it: common practice.

@@ -6,18 +6,20 @@ use super::answer::{BaselineReport, Now, SettingsReport};
 use super::baseline::Baseline;
 use super::caution::{Caution, Cautions};
 use super::course::Course;
+use super::dialled::Dialled;
 use super::forecast::{Forecaster, Held, HeldReadings};
 use super::gentle::{Least, Pairs};
 use super::levers::{Lever, levers};
 use super::limits::Verdict;
-use super::outcome::{Outcome, State};
+use super::outcome::Outcome;
 use super::remarks;
 use super::solve::{
     RATES_PER_MIN, Summit, exact_rate, exact_volume, settable_rates, settable_volumes, summit_of,
     volume_range,
 };
+use super::state::State;
 use super::target::{Asked, Target};
-use super::trial::{Dialled, Trial};
+use super::trial::Trial;
 use crate::case::entry::Aim;
 use crate::case::fault::{Fault, Place};
 use crate::case::profile::LimitId;

@@ -7,8 +7,8 @@ use crate::case::profile::Steps;
 use crate::physiology::breath::SHORTEST_EXPIRATION_S;
 use crate::physiology::root::{crossing, summit};
 
+use super::dialled::Dialled;
 use super::forecast::Forecaster;
-use super::trial::Dialled;
 use crate::case::settings::Timing;
 
 /// Where a faster rate stops clearing more.

@@ -6,6 +6,7 @@ use crate::case::settings::{Inflation, Settings, Timing};
 use crate::physiology::breath::pressure_control::filling;
 use crate::physiology::breath::{Lung, Phases};
 
+pub use super::dialled::Dialled;
 use super::forecast::Forecaster;
 
 /// CO2 output under trial.
@@ -44,48 +45,6 @@ pub struct Trial {
     pub compliance_ml_cmh2o: Option<f64>,
     /// What if resistance were this, cmH2O·s/L; moves the expiratory one only where that was assumed.
     pub resistance_cmh2o_s_l: Option<f64>,
-}
-
-/// Settings to forecast, and the patient they are dialled for.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub struct Dialled {
-    /// The settings.
-    pub settings: Settings,
-    /// The lung; `None` when no compliance is known.
-    pub lung: Option<Lung>,
-    /// Measured over modelled volume in pressure control.
-    pub pressure_scale: Option<f64>,
-    /// CO2 output over the present one.
-    pub co2_factor: f64,
-}
-
-impl Dialled {
-    /// The same patient with another set rate.
-    #[must_use]
-    pub const fn with_rate(mut self, rate_per_min: f64) -> Self {
-        self.settings.rate_per_min = rate_per_min;
-        self
-    }
-
-    /// The same patient with another volume (mL) or inspiratory pressure (cmH2O), whichever is controlled.
-    #[must_use]
-    pub const fn with_volume(mut self, value: f64) -> Self {
-        self.settings.inflation = match self.settings.inflation {
-            Inflation::Volume { pause_s, flow_pattern, .. } => {
-                Inflation::Volume { tidal_volume_ml: value, pause_s, flow_pattern }
-            }
-            Inflation::Pressure { .. } => Inflation::Pressure { inspiratory_pressure_cmh2o: value },
-        };
-        self
-    }
-
-    /// The set volume (mL) or inspiratory pressure (cmH2O), whichever is controlled.
-    pub const fn volume(&self) -> f64 {
-        match self.settings.inflation {
-            Inflation::Volume { tidal_volume_ml, .. } => tidal_volume_ml,
-            Inflation::Pressure { inspiratory_pressure_cmh2o } => inspiratory_pressure_cmh2o,
-        }
-    }
 }
 
 const fn flag(key: &'static str) -> Place {

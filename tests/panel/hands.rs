@@ -42,7 +42,7 @@ impl Hands {
         let bytes = std::fs::read(path).unwrap();
         let (record, _) = read::case(&bytes, &|name| file::profile(name, Some(path))).unwrap();
         let mut state = State::new(record, Origin::File(path.to_owned()), noon());
-        let files = Files::open(&mut state, bytes);
+        let files = Files::open(&mut state, &bytes);
         Self { state, files, left: false }
     }
 

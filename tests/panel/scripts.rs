@@ -241,7 +241,7 @@ fn a_second_panel_only_reads_and_says_so_and_a_file_changed_on_disk_is_noticed()
     let mut second = Hands::on_file(&path);
     assert!(second.screen(160, 50).contains("READ ONLY"));
     second.press("l c");
-    assert!(second.screen(160, 50).contains("Nothing can be charted: another program has"));
+    assert!(second.screen(160, 50).contains("is open elsewhere, so here it is read-only"));
     let other = fs::read_to_string(&path).unwrap() + "# typed elsewhere\n";
     fs::write(&path, &other).unwrap();
     first.press("l c Enter");

@@ -154,7 +154,7 @@ fn it_opens_turns_charts_is_killed_recovers_and_quits() {
     let left = std::fs::read_dir(folder.path()).unwrap().map(|entry| entry.unwrap().file_name());
     let mut left: Vec<_> = left.map(|name| name.into_string().unwrap()).collect();
     left.sort();
-    assert_eq!(left, ["bed.toml", "state"]);
+    assert_eq!(left, [".bed.toml.lock", "bed.toml", "state"]);
 }
 
 #[test]

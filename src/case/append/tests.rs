@@ -1,91 +1,151 @@
 use super::*;
-use crate::case::entry::Gas;
-use crate::case::presets;
+use std::fs;
+use tempfile::TempDir;
 
-fn entry_with(paco2_mmhg: f64) -> Entry {
-    let offset = jiff::tz::offset(1);
-    let datetime = jiff::civil::datetime(2026, 3, 20, 9, 0, 0, 0);
-    let at = crate::case::moment::Moment { instant: offset.to_timestamp(datetime).unwrap(), offset };
-    Entry {
-        at: Some(at),
-        gas: Gas { ph: Some(7.31), paco2_mmhg: Some(paco2_mmhg), ..Gas::default() },
-        ..Entry::default()
-    }
+const CASE: &str = "# Bay 3\nformat = 1\n[patient]\nsex = \"female\"\nheight = 163\n\n[[entry]]\nat = 2026-03-04T08:10:00+01:00\n[entry.settings]\nrate = 22 # set\ntidal_volume = 380\n[entry.gas]\npaco2 = 63";
+
+fn gas(time: &str, paco2_mmhg: f64) -> Entry {
+    let offset = jiff::tz::Offset::UTC;
+    let at = crate::case::moment::Moment { instant: time.parse().unwrap(), offset };
+    let mut entry = Entry { at: Some(at), ..Entry::default() };
+    entry.gas.paco2_mmhg = Some(paco2_mmhg);
+    entry
 }
 
-fn case_in(folder: &Path) -> (PathBuf, Vec<u8>) {
-    let path = folder.join("bed.toml");
-    let bytes = presets::case("injured-lungs").unwrap().text.as_bytes().to_vec();
-    fs::write(&path, &bytes).unwrap();
-    (path, bytes)
+fn case(text: &str) -> (TempDir, PathBuf, Seen) {
+    let folder = TempDir::new().unwrap();
+    let path = folder.path().join("bed3.toml");
+    fs::write(&path, text).unwrap();
+    (folder, path, Seen::of(text.as_bytes()))
 }
 
-#[test]
-fn earlier_bytes_are_untouched_and_the_entry_is_there() {
-    let folder = tempfile::tempdir().unwrap();
-    let (path, known) = case_in(folder.path());
-    let (bytes, record) = append(&path, &known, &entry_with(49.0)).unwrap();
-    assert!(bytes.starts_with(&known) && fs::read(&path).unwrap() == bytes);
-    assert_eq!(record.entries().last(), Some(&entry_with(49.0)));
-    // A second one after it.
-    let (more, _) = append(&path, &bytes, &entry_with(47.0)).unwrap();
-    assert!(more.starts_with(&bytes));
+fn names(folder: &TempDir) -> Vec<String> {
+    let mut names: Vec<String> = fs::read_dir(folder.path())
+        .unwrap()
+        .map(|entry| entry.unwrap().file_name().into_string().unwrap())
+        .collect();
+    names.sort();
+    names
 }
 
 #[test]
-fn a_file_changed_meanwhile_is_left_alone() {
-    let folder = tempfile::tempdir().unwrap();
-    let (path, known) = case_in(folder.path());
-    let other = [known.as_slice(), b"# someone else\n"].concat();
-    fs::write(&path, &other).unwrap();
-    assert!(matches!(append(&path, &known, &entry_with(49.0)), Err(NotAdded::Changed(_))));
-    assert_eq!(fs::read(&path).unwrap(), other);
+fn earlier_bytes_stay_and_the_new_entry_follows_after_one_empty_line() {
+    let (folder, path, seen) = case(CASE);
+    let appended = append(&path, &[gas("2026-03-04T08:10:00Z", 52.0)], &seen).unwrap();
+    let text = fs::read_to_string(&path).unwrap();
+    let added = "\n\n[[entry]]\nat = 2026-03-04T08:10:00+00:00\n\n[entry.gas]\npaco2 = 52\n";
+    assert_eq!(text, format!("{CASE}{added}"));
+    assert_eq!((appended.text.as_str(), appended.numbers, appended.meanwhile), (added, 2..3, 0));
+    assert_eq!(appended.seen, Seen::of(text.as_bytes()));
+    assert_eq!(names(&folder), [".bed3.toml.lock", "bed3.toml"]);
 }
 
 #[test]
-fn a_faulty_record_is_not_written() {
-    let folder = tempfile::tempdir().unwrap();
-    let (path, known) = case_in(folder.path());
-    assert!(matches!(append(&path, &known, &entry_with(490.0)), Err(NotAdded::Faulty(_))));
-    assert_eq!(fs::read(&path).unwrap(), known);
-}
-
-#[test]
-fn the_second_to_hold_a_file_is_told_and_the_third_may_after_the_first_is_done() {
-    let folder = tempfile::tempdir().unwrap();
-    let (path, _) = case_in(folder.path());
-    let first = hold(&path).unwrap();
-    let said = hold(&path).unwrap_err().to_string();
-    assert!(said.contains("another program") && said.contains("bed.toml"), "{said}");
-    drop(first);
-    assert_eq!(fs::read_dir(folder.path()).unwrap().count(), 1, "the lock is left behind");
-    assert!(hold(&path).is_ok());
-}
-
-#[test]
-fn windows_line_ends_are_kept() {
-    let folder = tempfile::tempdir().unwrap();
-    let (path, known) = case_in(folder.path());
-    let windows = String::from_utf8(known).unwrap().replace('\n', "\r\n");
-    let windows = windows.trim_end().as_bytes().to_vec();
-    fs::write(&path, &windows).unwrap();
-    let (bytes, _) = append(&path, &windows, &entry_with(49.0)).unwrap();
-    let text = String::from_utf8(bytes).unwrap();
+fn a_file_of_carriage_returns_gets_more_of_them() {
+    let (_folder, path, seen) = case(&format!("{CASE}\n").replace('\n', "\r\n"));
+    append(&path, &[gas("2026-03-04T08:10:00Z", 52.0)], &seen).unwrap();
+    let text = fs::read_to_string(&path).unwrap();
     assert_eq!(text.matches('\n').count(), text.matches("\r\n").count());
+    assert!(text.ends_with(
+        "paco2 = 63\r\n\r\n[[entry]]\r\nat = 2026-03-04T08:10:00+00:00\r\n\r\n[entry.gas]\r\npaco2 = 52\r\n"
+    ));
+}
+
+#[test]
+fn what_contradicts_the_record_is_not_written() {
+    let (_folder, path, seen) = case(CASE);
+    let mut wrong = gas("2026-03-04T08:10:00Z", 52.0);
+    wrong.measured.total_rate_per_min = Some(12.0);
+    let error = append(&path, &[wrong], &seen).unwrap_err();
+    let AppendError::Invalid { problems, .. } = &error else { panic!("{error}") };
+    // The record sets 22/min, and no total rate can be below that by more than 1.
+    assert!(problems[0].message.contains("22"), "{}", problems[0].message);
+    assert_eq!(fs::read_to_string(&path).unwrap(), CASE);
+}
+
+#[test]
+fn a_second_writer_is_told_and_the_first_loses_nothing() {
+    let (_folder, path, seen) = case(CASE);
+    let hold = Hold::take(&path).unwrap();
+    let entries = [gas("2026-03-04T08:10:00Z", 52.0)];
+    assert!(matches!(append(&path, &entries, &seen), Err(AppendError::Elsewhere(_))));
+    let first = hold.append(&entries, &seen).unwrap();
+    hold.append(&[gas("2026-03-04T09:10:00Z", 50.0)], &first.seen).unwrap();
+    drop(hold);
+    let now = Seen::of(&fs::read(&path).unwrap());
+    assert_eq!(append(&path, &[gas("2026-03-04T10:10:00Z", 48.0)], &now).unwrap().numbers, 4..5);
+}
+
+#[test]
+fn what_others_added_at_the_end_is_kept_and_counted() {
+    let (_folder, path, seen) = case(CASE);
+    append(&path, &[gas("2026-03-04T08:10:00Z", 52.0), gas("2026-03-04T08:40:00Z", 51.0)], &seen).unwrap();
+    let late = append(&path, &[gas("2026-03-04T09:10:00Z", 50.0)], &seen).unwrap();
+    assert_eq!((late.meanwhile, late.numbers), (2, 4..5));
+}
+
+#[test]
+fn a_file_changed_in_what_was_read_is_left_alone() {
+    let (_folder, path, seen) = case(CASE);
+    let other = CASE.replace("paco2 = 63", "paco2 = 36");
+    fs::write(&path, &other).unwrap();
+    let error = append(&path, &[gas("2026-03-04T08:10:00Z", 52.0)], &seen).unwrap_err();
+    assert!(matches!(error, AppendError::Changed(_)), "{error}");
+    assert_eq!(fs::read_to_string(&path).unwrap(), other);
+    fs::remove_file(&path).unwrap();
+    let error = append(&path, &[gas("2026-03-04T08:10:00Z", 52.0)], &seen).unwrap_err();
+    assert!(matches!(error, AppendError::Gone(_)), "{error}");
+    assert!(!path.exists());
+}
+
+#[test]
+fn a_new_file_is_its_owners_alone_and_never_takes_the_place_of_another() {
+    let folder = TempDir::new().unwrap();
+    let path = folder.path().join("new.toml");
+    let created = create(&path, CASE, &[gas("2026-03-04T08:10:00Z", 52.0)]).unwrap();
+    assert_eq!(created.record.entries().len(), 2);
+    #[cfg(unix)]
+    {
+        use std::os::unix::fs::PermissionsExt;
+        assert_eq!(fs::metadata(&path).unwrap().permissions().mode() & 0o777, 0o600);
+    }
+    assert!(matches!(create(&path, CASE, &[]), Err(AppendError::Exists(_))));
+    let nowhere = folder.path().join("nowhere").join("new.toml");
+    assert!(matches!(create(&nowhere, CASE, &[]), Err(AppendError::NoFolder(_))));
 }
 
 #[cfg(unix)]
 #[test]
-fn the_mode_is_kept_and_a_new_file_is_for_its_owner_only() {
-    use std::os::unix::fs::PermissionsExt;
-    let mode = |path: &Path| fs::metadata(path).unwrap().permissions().mode() & 0o777;
-    let folder = tempfile::tempdir().unwrap();
-    let (path, known) = case_in(folder.path());
+fn mode_and_links_are_kept_and_a_read_only_file_is_not_written() {
+    use std::os::unix::fs::{PermissionsExt, symlink};
+    let (folder, path, seen) = case(CASE);
     fs::set_permissions(&path, fs::Permissions::from_mode(0o640)).unwrap();
-    append(&path, &known, &entry_with(49.0)).unwrap();
-    assert_eq!(mode(&path), 0o640);
-    let new = folder.path().join("new.toml");
-    create(&new, presets::case("leak").unwrap().text, &entry_with(49.0)).unwrap();
-    assert_eq!(mode(&new), 0o600);
-    assert!(matches!(create(&new, "", &entry_with(49.0)), Err(NotAdded::There(_))));
+    let link = folder.path().join("link.toml");
+    symlink("bed3.toml", &link).unwrap();
+    let appended = append(&link, &[gas("2026-03-04T08:10:00Z", 52.0)], &seen).unwrap();
+    assert!(fs::symlink_metadata(&link).unwrap().is_symlink());
+    assert_eq!(fs::metadata(&path).unwrap().permissions().mode() & 0o777, 0o640);
+    fs::set_permissions(&path, fs::Permissions::from_mode(0o440)).unwrap();
+    let error = append(&path, &[gas("2026-03-04T09:10:00Z", 50.0)], &appended.seen).unwrap_err();
+    assert!(matches!(error, AppendError::ReadOnly(_)), "{error}");
+}
+
+#[test]
+fn what_a_killed_program_left_behind_is_swept_away_and_nothing_else() {
+    let (folder, path, seen) = case(CASE);
+    for name in [".bed3.toml.a1B2c3.part", ".bed3.toml.notes.part", ".bed4.toml.a1B2c3.part"] {
+        fs::write(folder.path().join(name), "half").unwrap();
+    }
+    append(&path, &[gas("2026-03-04T08:10:00Z", 52.0)], &seen).unwrap();
+    let left = [".bed3.toml.lock", ".bed3.toml.notes.part", ".bed4.toml.a1B2c3.part", "bed3.toml"];
+    assert_eq!(names(&folder), left);
+}
+
+#[test]
+fn a_rehearsal_writes_nothing() {
+    let (folder, path, seen) = case(CASE);
+    let shown = rehearse(&path, &[gas("2026-03-04T08:10:00Z", 52.0)], &seen).unwrap();
+    assert_eq!(shown.numbers, 2..3);
+    assert_eq!(fs::read_to_string(&path).unwrap(), CASE);
+    assert_eq!(names(&folder), ["bed3.toml"]);
 }

@@ -214,6 +214,18 @@ fn one_entry_is_read_with_or_without_its_header() {
 }
 
 #[test]
+fn several_entries_are_read_and_nothing_beside_them() {
+    let (entries, spans) =
+        fragments(b"[[entry]]\n[entry.gas]\npaco2 = 52\n[[entry]]\nby = \"RT\"\n", 3).unwrap();
+    assert_eq!((entries.len(), entries[1].by.as_deref()), (2, Some("RT")));
+    assert_eq!(spans.of(Place::in_entry(3, "gas", "paco2")), Some(30..32));
+    assert!(spans.of(Place::in_entry(4, "", "by")).is_some());
+    let beside = fragments(b"label = \"Bay 4\"\n[[entry]]\nby = \"RT\"\n", 3).unwrap_err();
+    assert_eq!(beside[0].message, "label stands beside [[entry]], and only entries can be added to a file");
+    assert_eq!(fragments(b"entry = []\n", 3).unwrap_err()[0].message, "there is nothing to chart");
+}
+
+#[test]
 fn a_profile_is_told_from_a_case_by_its_keys() {
     for preset in &crate::case::presets::PROFILES {
         assert_eq!(kind(preset.text.as_bytes()), Kind::Profile, "{}", preset.name);

@@ -73,6 +73,16 @@ impl Walk {
         self.problems.push(Problem::at(name.span(), format!("there is no key {typed} {here}"), help));
     }
 
+    /// A key beside the entries of a text that is to be added to a file.
+    pub(super) fn beside_entries(&mut self, name: &Name<'_>) {
+        let typed = shown(name.get_ref());
+        self.problems.push(Problem::at(
+            name.span(),
+            format!("{typed} stands beside [[entry]], and only entries can be added to a file"),
+            "take it away here; what holds for the whole case is written once, at the top of its file",
+        ));
+    }
+
     /// A quantity: a plain number or a string with its unit.
     pub(super) fn number(&mut self, input: &Plausible, place: Place, value: &Value<'_>) -> Option<f64> {
         self.spans.insert(place, value.span());

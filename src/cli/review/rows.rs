@@ -42,9 +42,14 @@ pub struct Columns {
 
 /// A stay's name as a CSV field, harmless to a spreadsheet.
 pub fn quoted(text: &str) -> String {
-    let plain = text.chars().all(|letter| letter.is_alphanumeric() || matches!(letter, '-' | '_' | '.' | ' '));
+    let plain =
+        text.chars().all(|letter| letter.is_alphanumeric() || matches!(letter, '-' | '_' | '.' | ' '));
     let safe = if text.starts_with(['=', '+', '-', '@']) { format!("'{text}") } else { text.to_owned() };
-    if plain { safe } else { format!("\"{}\"", safe.replace('"', "\"\"").replace(['\n', '\r', '\t', '\u{1b}'], " ")) }
+    if plain {
+        safe
+    } else {
+        format!("\"{}\"", safe.replace('"', "\"\"").replace(['\n', '\r', '\t', '\u{1b}'], " "))
+    }
 }
 
 impl Columns {
@@ -85,7 +90,11 @@ impl Columns {
             return Ok(columns);
         }
         let there: Vec<&str> = header.iter().collect();
-        Err(format!("the header lacks {}; it names: {}", missing.join(", "), there.join(", ").chars().take(200).collect::<String>()))
+        Err(format!(
+            "the header lacks {}; it names: {}",
+            missing.join(", "),
+            there.join(", ").chars().take(200).collect::<String>()
+        ))
     }
 
     /// Reads a row.
@@ -97,7 +106,8 @@ impl Columns {
             return Err(format!("it has {} fields, the header {columns}", record.len()));
         }
         let text = |at: Option<usize>| {
-            at.and_then(|at| record.get(at)).filter(|text| !matches!(*text, "" | "NA" | "nan" | "NaN" | "null"))
+            at.and_then(|at| record.get(at))
+                .filter(|text| !matches!(*text, "" | "NA" | "nan" | "NaN" | "null"))
         };
         let number = |at: Option<usize>, name: &str| -> Result<Option<f64>, String> {
             let Some(text) = text(at) else { return Ok(None) };
@@ -121,7 +131,19 @@ impl Columns {
             Some(mmhg) => mmhg,
             None => PressureUnit::KPa.to_mmhg(needed(number(self.pco2_kpa, "pco2_kpa")?, "pco2")?),
         };
-        let patient = self.patient(&text, &checked)?;
+        let mut patient = Patient {
+            sex: text(self.sex).map(sex).transpose()?,
+            airway: text(self.airway).map(airway).transpose()?,
+            ..Patient::default()
+        };
+        for (at, name, key) in [
+            (self.height, "height_cm", Key::Height),
+            (self.predicted_weight, "predicted_weight_kg", Key::PredictedWeight),
+        ] {
+            if let Some(slot) = patient_slot(&mut patient, key) {
+                *slot = checked(at, name, key)?;
+            }
+        }
         let gas = PastGas {
             hours,
             rate_set_per_min: rate_set,
@@ -135,30 +157,11 @@ impl Columns {
         let dead = airway_by_rule_ml(&patient) + gas.apparatus_ml;
         let breath = gas.volume_observed_ml.unwrap_or(vt_set).min(vt_set);
         if breath <= dead {
-            return Err(format!("a breath of {breath:.0} mL does not exceed the airway and apparatus dead space of {dead:.0} mL"));
+            return Err(format!(
+                "a breath of {breath:.0} mL does not exceed the airway and apparatus dead space of {dead:.0} mL"
+            ));
         }
         Ok(Row { stay, patient, gas })
-    }
-
-    fn patient<'r>(
-        &self,
-        text: &dyn Fn(Option<usize>) -> Option<&'r str>,
-        checked: &dyn Fn(Option<usize>, &str, Key) -> Result<Option<f64>, String>,
-    ) -> Result<Patient, String> {
-        let mut patient = Patient {
-            sex: text(self.sex).map(|word| sex(word)).transpose()?,
-            airway: text(self.airway).map(|word| airway(word)).transpose()?,
-            ..Patient::default()
-        };
-        for (at, name, key) in [
-            (self.height, "height_cm", Key::Height),
-            (self.predicted_weight, "predicted_weight_kg", Key::PredictedWeight),
-        ] {
-            if let Some(slot) = patient_slot(&mut patient, key) {
-                *slot = checked(at, name, key)?;
-            }
-        }
-        Ok(patient)
     }
 }
 
@@ -194,7 +197,10 @@ fn hours_of(text: &str) -> Result<f64, String> {
             .map(|zoned| zoned.timestamp().as_millisecond()),
     };
     // Milliseconds since 1970 are far below 2^52.
-    milliseconds
-        .map(|milliseconds| milliseconds as f64 / 3_600_000.0)
-        .ok_or_else(|| format!("at \"{}\" is not a time such as 2026-03-04T08:10:00+01:00", text.chars().take(40).collect::<String>()))
+    milliseconds.map(|milliseconds| milliseconds as f64 / 3_600_000.0).ok_or_else(|| {
+        format!(
+            "at \"{}\" is not a time such as 2026-03-04T08:10:00+01:00",
+            text.chars().take(40).collect::<String>()
+        )
+    })
 }

@@ -17,15 +17,21 @@ pub fn of(review: &Review, within_hours: f64, face: Face) -> String {
     )];
     if review.skipped > 0 {
         lines.push(format!("{} bad rows were left out:", review.skipped));
-        lines.extend(review.bad_rows.iter().take(10).map(|bad| {
-            face.wrapped(&format!("line {}: {}", bad.line, bad.message), "  ", "    ")
-        }));
+        lines.extend(
+            review
+                .bad_rows
+                .iter()
+                .take(10)
+                .map(|bad| face.wrapped(&format!("line {}: {}", bad.line, bad.message), "  ", "    ")),
+        );
         if review.skipped > 10 {
             lines.push("  … the rest stands in --json".replace('…', if face.ascii { "..." } else { "…" }));
         }
     }
     if review.figures.forecasts == 0 {
-        lines.push("No gas follows another closely enough, so nothing could be forecast and scored.".to_owned());
+        lines.push(
+            "No gas follows another closely enough, so nothing could be forecast and scored.".to_owned(),
+        );
         return finish(&lines);
     }
     lines.push(String::new());
@@ -33,7 +39,8 @@ pub fn of(review: &Review, within_hours: f64, face: Face) -> String {
     let pair = |name: &str, of: &dyn Fn(&Figures) -> String| {
         format!("{name:<44}{:>14}{:>18}", of(&review.figures), of(&review.after_change))
     };
-    let percent = |share: Option<f64>| share.map_or("none".to_owned(), |share| format!("{:.0} %", share * 100.0));
+    let percent =
+        |share: Option<f64>| share.map_or("none".to_owned(), |share| format!("{:.0} %", share * 100.0));
     let error = |ln: Option<f64>| ln.map_or("none".to_owned(), |ln| format!("{ln:.3}"));
     lines.push(pair("forecasts", &|figures| figures.forecasts.to_string()));
     lines.push(pair("inside 9 in 10 (honest: 85 to 95 %)", &|figures| percent(figures.wide_coverage)));
@@ -48,7 +55,9 @@ pub fn of(review: &Review, within_hours: f64, face: Face) -> String {
     lines.push(String::new());
     match &review.fitted {
         Some(fitted) => lines.extend(steadiness(fitted, review)),
-        None => lines.push("Fewer than 30 forecasts: too few to fit steadiness figures of your own.".to_owned()),
+        None => {
+            lines.push("Fewer than 30 forecasts: too few to fit steadiness figures of your own.".to_owned());
+        }
     }
     lines.push(String::new());
     lines.push(face.wrapped(

@@ -7,7 +7,7 @@ use crate::case::entry::{Aim, Control, Entry, FlowPattern};
 use crate::case::slots::entry_value;
 use crate::note::face::Face;
 use crate::panel::state::State;
-use crate::planning::score::{Fell, score};
+use crate::planning::reckoning::{Landing, Reckoned, Reckoning, reckon};
 use crate::quantity::input::INPUTS;
 use crate::quantity::show::with_unit;
 use crate::quantity::unit::Dimension;
@@ -28,6 +28,7 @@ pub fn draw(state: &State, area: Rect, pen: &mut Pen<'_>) {
 
 fn entries(state: &State, width: u16) -> Vec<(bool, String)> {
     let record = &state.charted;
+    let reckoned = reckon(record);
     let mut out = Vec::new();
     for (number, entry) in (1..).zip(record.entries()).collect::<Vec<_>>().into_iter().rev() {
         let amended = record.entries().iter().zip(1..).find(|(other, _)| other.amends == Some(number));
@@ -37,14 +38,14 @@ fn entries(state: &State, width: u16) -> Vec<(bool, String)> {
         let by = entry.by.as_ref().map_or_else(String::new, |by| format!(" · {by}"));
         let at = entry.at.map_or_else(|| "without a time".to_owned(), |at| at.to_string());
         out.push((true, format!("{number} · {at}{by}{corrects}{struck}")));
-        for line in body(state, number, entry) {
+        for line in body(state, &reckoned, number, entry) {
             out.extend(lines(&line, width.saturating_sub(3)).into_iter().map(|line| (false, line)));
         }
     }
     out
 }
 
-fn body(state: &State, number: usize, entry: &Entry) -> Vec<String> {
+fn body(state: &State, reckoned: &Reckoned, number: usize, entry: &Entry) -> Vec<String> {
     let face = state.face;
     let mut body = Vec::new();
     for (table, title) in
@@ -66,7 +67,7 @@ fn body(state: &State, number: usize, entry: &Entry) -> Vec<String> {
             body.push(format!("{title}: {}", parts.join(", ")));
         }
     }
-    body.extend(plan_words(state, number, entry, face));
+    body.extend(plan_words(reckoned, number, entry, face));
     if let Some(trial) = &entry.trial {
         body.push(format!("breathing trial, {} observations", trial.observations.len()));
     }
@@ -85,7 +86,7 @@ fn control_words(entry: &Entry) -> Vec<String> {
     control.into_iter().chain(falling).map(str::to_owned).collect()
 }
 
-fn plan_words(state: &State, number: usize, entry: &Entry, face: Face) -> Option<String> {
+fn plan_words(reckoned: &Reckoned, number: usize, entry: &Entry, face: Face) -> Option<String> {
     let plan = entry.plan.as_ref()?;
     let mut parts = Vec::new();
     let mut dial = |value: Option<f64>, words: &str, dimension| {
@@ -105,14 +106,30 @@ fn plan_words(state: &State, number: usize, entry: &Entry, face: Face) -> Option
     let wide = plan.wide_interval_mmhg.map_or_else(String::new, |[low, high]| {
         format!(", 9 in 10 in {}", face.gas_range(Some(low), Some(high)))
     });
-    let occasions = state.charted.occasions();
-    let at = occasions.iter().position(|occasion| occasion.number == number);
-    let came = match at.and_then(|at| score(occasions, at)) {
-        None => "; its gas is still to come".to_owned(),
-        Some(score) => {
-            let fell = score.fell.map_or("but not under these settings", Fell::words);
-            format!("; {} came (entry {}), {fell}", face.gas(score.paco2_mmhg), score.number)
-        }
+    let reckoning = reckoned.reckonings.iter().find(|one| one.plan_entry == number);
+    let waiting = reckoned.waiting.as_ref().is_some_and(|waiting| waiting.plan_entry == number);
+    let came = match (reckoning, waiting) {
+        (Some(reckoning), _) => came_words(reckoning, face),
+        (None, true) => "; its gas is still to come".to_owned(),
+        (None, false) => "; another plan took its place before a gas".to_owned(),
     };
     Some(format!("plan{aim}: {}{forecast}{wide}{came}", parts.join(", ")))
+}
+
+/// What came of a plan.
+fn came_words(reckoning: &Reckoning, face: Face) -> String {
+    let landed = if !reckoning.differences.is_empty() {
+        "not dialled as planned, so it does not count"
+    } else if !reckoning.settled {
+        "drawn before it had settled, so it does not count"
+    } else {
+        match reckoning.landing {
+            Some(Landing::Half) => "inside the half where 1 gas in 2 falls",
+            Some(Landing::Wide) => "inside the range where 9 in 10 fall",
+            Some(Landing::Above) => "above the range where 9 in 10 fall",
+            Some(Landing::Below) => "below the range where 9 in 10 fall",
+            None => "without an interval to hold it against",
+        }
+    };
+    format!("; {} came (entry {}), {landed}", face.gas(reckoning.measured_mmhg), reckoning.gas_entry)
 }

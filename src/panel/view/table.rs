@@ -1,16 +1,21 @@
 //! The table: rate across, volume or inspiratory pressure down, the forecast PaCO2 in each cell.
 
+use std::cell::RefCell;
+
 use ratatui::layout::{Position, Rect};
 
 use super::pen::{Pen, cells};
 use crate::case::entry::Control;
-use crate::case::profile::LimitId;
+use crate::case::profile::{Figures, LimitId};
 use crate::panel::action::Action;
 use crate::panel::scene::Scene;
 use crate::panel::state::{Mode, State};
+use crate::planning::baseline::Baseline;
+use crate::planning::figures;
 use crate::planning::gentle::{Least, Pairs};
 use crate::planning::limits::{self, Verdict};
 use crate::planning::solve::{RATES_PER_MIN, volume_range, volume_step};
+use crate::planning::target::Target;
 use crate::planning::trial::Dialled;
 use crate::quantity::show::number;
 use crate::quantity::unit::Dimension;
@@ -98,11 +103,41 @@ fn same(one: f64, other: f64) -> bool {
     (one - other).abs() < 1e-6
 }
 
-/// The gentlest pair for the goal.
+/// All that the gentlest pair hangs on.
+#[derive(PartialEq)]
+struct Asked {
+    baseline: Baseline,
+    figures: Figures,
+    base: Dialled,
+    target: Target,
+}
+
+thread_local! {
+    /// The last question and its answer: the search looks at thousands of pairs, and turning rate or volume does not
+    /// change what it finds. The whole question is compared, so an answer is never stale.
+    static ANSWERED: RefCell<Option<(Asked, Option<Dialled>)>> = const { RefCell::new(None) };
+}
+
+/// The gentlest pair for the goal, sought from the rate and volume of now.
 fn gentlest(scene: &Scene<'_>, base: &Dialled) -> Option<Dialled> {
-    let target = scene.target.as_ref().ok()?;
-    let pairs = Pairs::search(&scene.forecaster, base, *target, Least::Load, &scene.now.state).ok()?;
-    pairs.choose(None).ok().map(|chosen| chosen.dialled)
+    let target = *scene.target.as_ref().ok()?;
+    let now = &scene.now_dialled;
+    let base = if base.settings.control() == now.settings.control() {
+        base.with_rate(now.settings.rate_per_min).with_volume(now.volume())
+    } else {
+        *base
+    };
+    let baseline = scene.forecaster.baseline();
+    let asked = Asked { baseline: baseline.clone(), figures: figures(scene.record), base, target };
+    ANSWERED.with_borrow_mut(|answered| match answered {
+        Some((same, answer)) if *same == asked => *answer,
+        _ => {
+            let pairs = Pairs::search(&scene.forecaster, &base, target, Least::Load, &scene.now.state);
+            let answer = pairs.ok().and_then(|pairs| pairs.choose(None).ok()).map(|chosen| chosen.dialled);
+            *answered = Some((asked, answer));
+            answer
+        }
+    })
 }
 
 /// Draws the view.

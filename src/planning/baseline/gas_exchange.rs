@@ -7,6 +7,7 @@ use crate::case::fault::{Fault, Place};
 use crate::physiology::carbon_dioxide::{alveolar_ventilation, output, pressure};
 use crate::physiology::{body, dead_space, energy};
 use crate::planning::caution::Cautions;
+use crate::quantity::show::PressureUnit;
 use crate::quantity::typed::{BtpsFlow, GasPressure, StpdFlow, Temperature, Volume};
 
 /// What fixes the CO2 output.
@@ -103,6 +104,7 @@ impl GasExchange {
         cautions: &mut Cautions,
     ) -> Result<Self, Fault> {
         let reading = Reading::new(breath, patient);
+        reading.doubt_units(measured, cautions);
         let whole = reading.whole_dead_space(measured, cautions)?;
         let fraction = reading.fraction_from_end_tidal(measured, cautions)?;
         match (whole, fraction) {
@@ -212,6 +214,26 @@ impl Reading {
                     reproduced / self.arterial * self.paco2_at_37()
                 ),
             );
+        }
+    }
+
+    /// A low expired PCO2 that would be plain in kPa: plausible as typed, so asked, not refused.
+    fn doubt_units(&self, measured: &Measured, cautions: &mut Cautions) {
+        for (key, words, value) in [
+            ("end_tidal_co2", "End-tidal", measured.end_tidal_co2_mmhg),
+            ("mixed_expired_co2", "Mixed expired", measured.mixed_expired_co2_mmhg),
+        ] {
+            let Some(mmhg) = value else { continue };
+            let as_kpa = PressureUnit::KPa.to_mmhg(mmhg);
+            if mmhg < 0.25 * self.arterial.mmhg() && as_kpa < 1.15 * self.arterial.mmhg() {
+                cautions.say(
+                    "perhaps_kilopascal",
+                    format!(
+                        "{words} PCO2 of {mmhg:.0} mmHg is far below arterial. If it was read in kPa, write {key} = \"{mmhg} kPa\"; \
+                         if not, check the capnometer and the circulation."
+                    ),
+                );
+            }
         }
     }
 

@@ -141,7 +141,9 @@ pub fn fit(sample: &Sample) -> Option<Fitted> {
         }
         let (others, _) = search(&rest, start, enough(&rest));
         for case in out {
-            let Ok(forecaster) = Forecaster::new(&case.baseline, figures(others), Held::Split) else { continue };
+            let Ok(forecaster) = Forecaster::new(&case.baseline, figures(others), Held::Split) else {
+                continue;
+            };
             let Some(mixture) = forecaster.mixture(&dialled(&forecaster, &case.next)) else { continue };
             let below = mixture.below(libm::log(case.next.paco2_mmhg));
             scored += 1;

@@ -102,7 +102,8 @@ impl Tally {
         self.ln_arithmetic += score.ln_error(score.arithmetic_mmhg);
         self.ln_before += score.ln_error(score.before_mmhg);
         self.ln_density += libm::log(score.density.max(f64::MIN_POSITIVE));
-        let tenth = self.deciles.iter_mut().zip(1..).find(|(_, upper)| score.below * 10.0 < f64::from(*upper));
+        let tenth =
+            self.deciles.iter_mut().zip(1..).find(|(_, upper)| score.below * 10.0 < f64::from(*upper));
         if let Some((count, _)) = tenth {
             *count += 1;
         } else if let Some(last) = self.deciles.last_mut() {

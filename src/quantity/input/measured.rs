@@ -168,9 +168,9 @@ pub(super) const GAS: [Input; 4] = [
         Key::Paco2,
         ["gas", "paco2", "PaCO2"],
         Dimension::GasPressure,
-        [10.0, 150.0],
+        [10.0, 200.0],
         "63",
-        "the range a pH target may ask for; wider readings are rare: common practice",
+        "severe asthma reaches the upper end: common practice",
     ),
     Input::new(
         Key::Pao2,

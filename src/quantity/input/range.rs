@@ -117,7 +117,7 @@ impl Plausible {
         Err(OutOfRange { message: self.complaint(value, typed), help: self.likely(value, typed) })
     }
 
-    /// The plausible range in words: "10 to 150 mmHg".
+    /// The plausible range in words: "10 to 200 mmHg".
     pub fn range(&self) -> String {
         if self.dimension == Dimension::Ratio {
             return format!("{} to {}", show::ratio(self.min), show::ratio(self.max));
@@ -238,7 +238,7 @@ mod tests {
     #[test]
     fn a_number_plausible_in_another_unit_is_offered_and_never_taken() {
         let (message, help) = refused(Key::Paco2, 5.3);
-        assert_eq!(message, "PaCO2 of 5.3 mmHg is below what is plausible, 10 to 150 mmHg");
+        assert_eq!(message, "PaCO2 of 5.3 mmHg is below what is plausible, 10 to 200 mmHg");
         // 5.3 kPa is 39.75 mmHg by the definition of the torr.
         assert_eq!(
             help,

@@ -49,13 +49,12 @@ class Next:
 
 
 class Belief:
-    def __init__(self, mean, spread, gases, steadiness):
+    def __init__(self, mean, spread, gases, steadiness, cells=201):
         self.mean, self.spread, self.gases, self.steadiness = max(0.0, mean), spread, gases, steadiness
         self.low = max(0.0, self.mean - 4.0 * spread)
         self.high = min(self.mean + 4.0 * spread, 0.95 * min(g.vt - g.apparatus for g in gases))
         if self.high <= self.low:
             self.low = 0.0
-        cells = 201
         self.airway = self.low + (np.arange(cells) + 0.5) * (self.high - self.low) / cells
         log_weight = -0.5 * ((self.airway - self.mean) / spread) ** 2
         self.x, self.var = None, None
