@@ -89,7 +89,8 @@ impl Files {
 
     /// Begins a file; what happened comes back as an action.
     fn create(&mut self, path: &Path, text: &str, entry: &Entry) -> Action {
-        let begun = Hold::take(path).and_then(|hold| Ok((hold.create(text, std::slice::from_ref(entry))?, hold)));
+        let begun =
+            Hold::take(path).and_then(|hold| Ok((hold.create(text, std::slice::from_ref(entry))?, hold)));
         match begun {
             Ok((appended, hold)) => {
                 self.held = Some((hold, appended.seen));
@@ -101,7 +102,11 @@ impl Files {
 }
 
 fn charted(appended: Appended, path: &Path) -> Action {
-    Action::Charted { record: Box::new(appended.record), path: path.to_owned(), meanwhile: appended.meanwhile }
+    Action::Charted {
+        record: Box::new(appended.record),
+        path: path.to_owned(),
+        meanwhile: appended.meanwhile,
+    }
 }
 
 fn not_added(why: &AppendError) -> Action {

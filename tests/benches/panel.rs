@@ -1,5 +1,11 @@
 //! One key and the drawing that follows, at 160×50 with 20 gases on file. To be answered within one frame.
-#![allow(missing_docs, clippy::unwrap_used, clippy::panic, reason = "a bench may stop at the first surprise")]
+#![allow(
+    missing_docs,
+    clippy::unwrap_used,
+    clippy::panic,
+    clippy::indexing_slicing,
+    reason = "a bench may stop at the first surprise"
+)]
 
 use std::fmt::Write as _;
 use std::hint::black_box;
@@ -21,7 +27,11 @@ fn twenty_gases() -> State {
     for hour in 0..18 {
         let (day, clock) = (10 + hour / 24, hour % 24);
         let paco2 = 50 + (hour * 7) % 13;
-        write!(text, "\n[[entry]]\nat = 2026-03-{day}T{clock:02}:00:00+01:00\n[entry.gas]\nph = 7.3\npaco2 = {paco2}\n").unwrap();
+        write!(
+            text,
+            "\n[[entry]]\nat = 2026-03-{day}T{clock:02}:00:00+01:00\n[entry.gas]\nph = 7.3\npaco2 = {paco2}\n"
+        )
+        .unwrap();
     }
     let (record, _) = read::case(text.as_bytes(), &|name| file::profile(name, None)).unwrap();
     let offset = jiff::tz::offset(1);

@@ -74,6 +74,9 @@ fn the_panels_page_is_true() {
     if std::env::var_os("UPDATE_DOCS").is_some() {
         std::fs::write(&path, &out).unwrap();
     } else {
-        assert_eq!(page, out, "docs/panel.md is not true any more: UPDATE_DOCS=1 cargo test --test panel docs");
+        assert_eq!(
+            page, out,
+            "docs/panel.md is not true any more: UPDATE_DOCS=1 cargo test --test panel docs"
+        );
     }
 }

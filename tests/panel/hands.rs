@@ -106,8 +106,10 @@ impl Hands {
 
     /// Something of what is tried.
     pub fn tried<T>(&self, see: impl FnOnce(&tidewright::planning::outcome::State) -> T) -> T {
-        tidewright::panel::update::on_scene(&self.state, |scene| Ok(see(&scene.tried.as_ref().unwrap().outcome.state)))
-            .unwrap()
+        tidewright::panel::update::on_scene(&self.state, |scene| {
+            Ok(see(&scene.tried.as_ref().unwrap().outcome.state))
+        })
+        .unwrap()
     }
 }
 

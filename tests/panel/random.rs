@@ -19,14 +19,29 @@ impl Dice {
 }
 
 const KEYS: &[KeyCode] = &[
-    KeyCode::Up, KeyCode::Down, KeyCode::Left, KeyCode::Right, KeyCode::Left, KeyCode::Right, KeyCode::Enter,
-    KeyCode::Esc, KeyCode::Tab, KeyCode::BackTab, KeyCode::Backspace, KeyCode::PageDown, KeyCode::PageUp,
+    KeyCode::Up,
+    KeyCode::Down,
+    KeyCode::Left,
+    KeyCode::Right,
+    KeyCode::Left,
+    KeyCode::Right,
+    KeyCode::Enter,
+    KeyCode::Esc,
+    KeyCode::Tab,
+    KeyCode::BackTab,
+    KeyCode::Backspace,
+    KeyCode::PageDown,
+    KeyCode::PageUp,
 ];
 const LETTERS: &str = "hjklHLjjllfgnuUscepvm!?0123456789.,:x yn13%";
 
 fn press(hands: &mut Hands, dice: &mut Dice) -> String {
     let letters: Vec<char> = LETTERS.chars().collect();
-    let code = if dice.roll(3) == 0 { KEYS[dice.roll(KEYS.len())] } else { KeyCode::Char(letters[dice.roll(letters.len())]) };
+    let code = if dice.roll(3) == 0 {
+        KEYS[dice.roll(KEYS.len())]
+    } else {
+        KeyCode::Char(letters[dice.roll(letters.len())])
+    };
     // Files are for the scripts: random hands do not begin any.
     if matches!(hands.state.mode, Mode::Naming { .. } | Mode::Note) {
         hands.press("Esc");
@@ -36,7 +51,8 @@ fn press(hands: &mut Hands, dice: &mut Dice) -> String {
 }
 
 fn now(hands: &Hands) -> String {
-    tidewright::panel::update::on_scene(&hands.state, |scene| Ok(format!("{:?}", scene.now.state))).unwrap_or_default()
+    tidewright::panel::update::on_scene(&hands.state, |scene| Ok(format!("{:?}", scene.now.state)))
+        .unwrap_or_default()
 }
 
 #[test]
@@ -95,7 +111,9 @@ fn every_size_draws_without_a_panic() {
     }
     // The least screens, each with each.
     for hands in &every {
-        for (width, height) in [(60, 18), (60, 24), (79, 18), (80, 24), (100, 30), (139, 30), (140, 24), (220, 70)] {
+        for (width, height) in
+            [(60, 18), (60, 24), (79, 18), (80, 24), (100, 30), (139, 30), (140, 24), (220, 70)]
+        {
             let _ = hands.buffer(width, height);
         }
     }

@@ -117,7 +117,17 @@ fn eighty_by_twenty_four_loses_nothing_essential() {
             .map(|word| screen.lines().filter(|row| row.trim_end().ends_with(word)).count())
             .sum();
         assert_eq!(verdicts, limits, "{}\n{screen}", preset.name);
-        for words in ["PaCO2 mmHg", "1 gas in 2 in", "9 in 10 in", "in 100 land", "pH", "goal", "turn", "? keys", "Decision support"] {
+        for words in [
+            "PaCO2 mmHg",
+            "1 gas in 2 in",
+            "9 in 10 in",
+            "in 100 land",
+            "pH",
+            "goal",
+            "turn",
+            "? keys",
+            "Decision support",
+        ] {
             assert!(screen.contains(words), "{}: {words}\n{screen}", preset.name);
         }
     }

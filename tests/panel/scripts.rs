@@ -27,7 +27,10 @@ fn arrows_turn_by_the_ventilators_step_and_undo_brings_back() {
     hands.press("L H Left");
     assert_eq!(rate(&hands), Some(22.0));
     hands.press("u u u u u u");
-    assert_eq!((rate(&hands), hands.screen(100, 30).replace(" Undone: rate 21/min.", "")), (None, again(&before, &hands)));
+    assert_eq!(
+        (rate(&hands), hands.screen(100, 30).replace(" Undone: rate 21/min.", "")),
+        (None, again(&before, &hands))
+    );
     hands.press("^R ^R");
     assert_eq!(rate(&hands), Some(22.0));
 }
@@ -75,7 +78,9 @@ fn fit_goal_and_gentlest_dial_what_the_plan_says() {
     let mut hands = Hands::on("injured-lungs");
     hands.press("f");
     assert_eq!(rate(&hands), Some(26.0));
-    assert!(hands.screen(160, 50).contains("PaCO2 46 mmHg (exactly 26.2); beyond its limit: mechanical power."));
+    assert!(
+        hands.screen(160, 50).contains("PaCO2 46 mmHg (exactly 26.2); beyond its limit: mechanical power.")
+    );
     hands.press("n g");
     assert_eq!((rate(&hands), hands.state.turned.trial.tidal_volume_ml), (Some(30.0), Some(260.0)));
     hands.press("n");
@@ -281,7 +286,10 @@ fn a_profile_changes_limits_and_goal_and_is_undone() {
     let mut hands = Hands::on("injured-lungs");
     hands.press("p j Enter");
     let screen = hands.screen(160, 50);
-    assert!(screen.contains("brain-injury (chosen here)") && screen.contains("PaCO2 35–45 mmHg, profile"), "{screen}");
+    assert!(
+        screen.contains("brain-injury (chosen here)") && screen.contains("PaCO2 35–45 mmHg, profile"),
+        "{screen}"
+    );
     hands.press("u Down");
     assert!(!hands.screen(160, 50).contains("brain-injury"));
 }
@@ -293,11 +301,16 @@ fn the_mouse_marks_turns_opens_and_takes() {
     let screen = hands.screen(100, 30);
     let find = |words: &str| {
         let (y, row) = screen.lines().enumerate().find(|(_, row)| row.contains(words)).unwrap();
-        let x = row.chars().collect::<Vec<_>>().windows(words.chars().count()).position(|part| part.iter().collect::<String>() == words);
+        let x = row
+            .chars()
+            .collect::<Vec<_>>()
+            .windows(words.chars().count())
+            .position(|part| part.iter().collect::<String>() == words);
         Position { x: u16::try_from(x.unwrap()).unwrap() + 1, y: u16::try_from(y).unwrap() }
     };
     let touch = |hands: &mut Hands, at: Position, wheel: i32| {
-        let action = view::touched(&hands.state, area, at, wheel).unwrap_or_else(|| panic!("nothing at {at}"));
+        let action =
+            view::touched(&hands.state, area, at, wheel).unwrap_or_else(|| panic!("nothing at {at}"));
         hands.act(action);
     };
     touch(&mut hands, find("PEEP"), 0);
@@ -335,7 +348,9 @@ fn under_support_the_panel_says_why_there_is_no_forecast() {
 fn each_key_does_something_visible() {
     let met = |when: When| -> Vec<&'static str> {
         match when {
-            When::Look => vec!["", "l l", "j l", "l u", "Tab Tab Tab Tab Tab", "v", "Tab Tab Tab Tab Tab v PageDown"],
+            When::Look => {
+                vec!["", "l l", "j l", "l u", "Tab Tab Tab Tab Tab", "v", "Tab Tab Tab Tab Tab v PageDown"]
+            }
             When::Typing => vec!["2 2"],
             When::Walk => vec!["Tab Enter Right Down"],
             When::Slots => vec!["l s"],
@@ -354,7 +369,11 @@ fn each_key_does_something_visible() {
         for (press, action) in row.presses {
             let outside = matches!(
                 action,
-                Action::NoteToFile | Action::NoteToClipboard | Action::Leave | Action::LeaveAnyway | Action::Suspend
+                Action::NoteToFile
+                    | Action::NoteToClipboard
+                    | Action::Leave
+                    | Action::LeaveAnyway
+                    | Action::Suspend
             ) || (row.when == When::Naming && *action == Action::Accept);
             if outside {
                 continue;
@@ -395,10 +414,17 @@ fn six_keys_show_the_summit() {
 #[test]
 fn fewer_larger_breaths_clear_more_and_cost_driving_pressure() {
     let mut hands = Hands::on("injured-lungs");
-    let before = hands.tried(|state| (state.minute_ventilation_l_min, state.paco2_mmhg, state.driving_pressure_cmh2o.unwrap()));
+    let before = hands.tried(|state| {
+        (state.minute_ventilation_l_min, state.paco2_mmhg, state.driving_pressure_cmh2o.unwrap())
+    });
     hands.types("15").press("Enter j").types("400").press("Enter");
-    let after = hands.tried(|state| (state.minute_ventilation_l_min, state.paco2_mmhg, state.driving_pressure_cmh2o.unwrap()));
-    assert!((before.0 - after.0).abs() < 1e-9 && after.1 < before.1 - 3.0 && after.2 > before.2 + 3.0, "{before:?} {after:?}");
+    let after = hands.tried(|state| {
+        (state.minute_ventilation_l_min, state.paco2_mmhg, state.driving_pressure_cmh2o.unwrap())
+    });
+    assert!(
+        (before.0 - after.0).abs() < 1e-9 && after.1 < before.1 - 3.0 && after.2 > before.2 + 3.0,
+        "{before:?} {after:?}"
+    );
     let screen = hands.screen(100, 30);
     assert!(screen.contains("fewer, larger breaths pay for their dead space less"), "{screen}");
 }

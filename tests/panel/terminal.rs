@@ -4,7 +4,7 @@
 
 use std::io::{Read, Write};
 use std::path::Path;
-use std::sync::mpsc::{Receiver, channel};
+use std::sync::mpsc::{Receiver, RecvTimeoutError, channel};
 use std::time::{Duration, Instant};
 
 use portable_pty::{Child, CommandBuilder, MasterPty, PtySize, native_pty_system};
@@ -51,7 +51,14 @@ impl Screen {
                 }
             }
         });
-        Self { master: pair.master, child, keys, output, parser: vt100::Parser::new(30, 100, 0), raw: Vec::new() }
+        Self {
+            master: pair.master,
+            child,
+            keys,
+            output,
+            parser: vt100::Parser::new(30, 100, 0),
+            raw: Vec::new(),
+        }
     }
 
     fn press(&mut self, keys: &str) -> &mut Self {
@@ -62,7 +69,9 @@ impl Screen {
 
     /// Waits until the screen says `words`.
     fn says(&mut self, words: &str) -> &mut Self {
-        self.until(&format!("the screen to say {words}"), |screen| screen.parser.screen().contents().contains(words))
+        self.until(&format!("the screen to say {words}"), |screen| {
+            screen.parser.screen().contents().contains(words)
+        })
     }
 
     fn until(&mut self, what: &str, reached: impl Fn(&Self) -> bool) -> &mut Self {
@@ -73,7 +82,9 @@ impl Screen {
                     self.parser.process(&part);
                     self.raw.extend(part);
                 }
-                Err(_) => panic!("waited in vain for {what}:\n{}", self.parser.screen().contents()),
+                Err(RecvTimeoutError::Timeout | RecvTimeoutError::Disconnected) => {
+                    panic!("waited in vain for {what}:\n{}", self.parser.screen().contents())
+                }
             }
         }
         self
@@ -105,7 +116,11 @@ impl Screen {
         assert!(!screen.alternate_screen(), "the other screen is left on");
         assert!(!screen.hide_cursor(), "the cursor is left hidden");
         assert!(!screen.bracketed_paste(), "bracketed paste is left on");
-        assert_eq!(screen.mouse_protocol_mode(), vt100::MouseProtocolMode::None, "the mouse is left captured");
+        assert_eq!(
+            screen.mouse_protocol_mode(),
+            vt100::MouseProtocolMode::None,
+            "the mouse is left captured"
+        );
         let modes = self.master.get_termios().unwrap();
         assert!(format!("{:?}", modes.local_flags).contains("ICANON"), "keys are left raw");
     }
@@ -250,7 +265,8 @@ fn ctrl_z_stops_with_the_terminal_given_back_and_continues() {
 
 #[test]
 fn without_a_terminal_it_prints_the_plan() {
-    let output = std::process::Command::new(env!("CARGO_BIN_EXE_tidewright")).arg("injured-lungs").output().unwrap();
+    let output =
+        std::process::Command::new(env!("CARGO_BIN_EXE_tidewright")).arg("injured-lungs").output().unwrap();
     let text = String::from_utf8(output.stdout).unwrap();
     assert!(text.contains("gentlest") && !text.contains('\x1b'), "{text}");
 }

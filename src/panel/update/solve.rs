@@ -145,7 +145,8 @@ fn fit_time(state: &mut State) {
         let target = scene.target.as_ref().map_err(|fault| fault.message.clone())?;
         let ratio = matches!(dialled.settings.timing, Timing::Ratio(_));
         let input = if ratio { Key::Ratio } else { Key::InspiratoryTime }.input();
-        let values = (0_u32..).map(|n| input.min + f64::from(n) * input.step).take_while(|value| *value <= input.max);
+        let values =
+            (0_u32..).map(|n| input.min + f64::from(n) * input.step).take_while(|value| *value <= input.max);
         let tries = values.filter_map(|value| {
             let timing = if ratio { Timing::Ratio(value) } else { Timing::InspiratoryTime(value) };
             let mut tried = dialled;

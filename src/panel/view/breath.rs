@@ -72,9 +72,12 @@ fn legend(scene: &Scene<'_>, [now, tried]: [&State; 2], area: Rect, y: u16, pen:
     if area.height < 6 {
         let names: Vec<String> = shares(now).iter().map(|(sign, name, _)| format!("{sign} {name}")).collect();
         pen.text(area, 1, y, &names.join("  "), pen.theme.plain());
-        let left = |state: &State| state.trapped_volume_ml.map_or_else(|| "unknown".to_owned(), |ml| format!("{} mL", number(ml, 0)));
+        let left = |state: &State| {
+            state.trapped_volume_ml.map_or_else(|| "unknown".to_owned(), |ml| format!("{} mL", number(ml, 0)))
+        };
         let least = if scene.forecaster.trapping_assumed() { "at least " } else { "" };
-        let said = format!("Still in when the next breath begins: {least}now {}, try {}.", left(now), left(tried));
+        let said =
+            format!("Still in when the next breath begins: {least}now {}, try {}.", left(now), left(tried));
         pen.text(area, 1, y + 1, &said, pen.theme.plain());
         return;
     }

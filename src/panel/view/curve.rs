@@ -206,7 +206,9 @@ fn share_sentence(scene: &Scene<'_>, tried: &Tried, short: bool) -> Option<Strin
         let driving = then
             .driving_pressure_cmh2o
             .zip(now.driving_pressure_cmh2o)
-            .map_or_else(String::new, |(then, now)| format!("; driving {} to {} cmH2O", number(now, 0), number(then, 0)));
+            .map_or_else(String::new, |(then, now)| {
+                format!("; driving {} to {} cmH2O", number(now, 0), number(then, 0))
+            });
         return Some(format!("{how}: {:.0} % useful, not {:.0} %{driving}.", after * 100.0, before * 100.0));
     }
     let how = if slower { "fewer, larger breaths pay" } else { "more, smaller breaths pay" };
@@ -223,7 +225,13 @@ fn share_sentence(scene: &Scene<'_>, tried: &Tried, short: bool) -> Option<Strin
 }
 
 /// What one step of a line buys from here, and what it bought from now.
-fn step_sentence(scene: &Scene<'_>, tried: &Tried, line: LineId, short: bool, pen: &Pen<'_>) -> Option<String> {
+fn step_sentence(
+    scene: &Scene<'_>,
+    tried: &Tried,
+    line: LineId,
+    short: bool,
+    pen: &Pen<'_>,
+) -> Option<String> {
     let timing = tried.dialled.settings.timing;
     let input = line.key(timing)?.input();
     let steps = scene.steps();

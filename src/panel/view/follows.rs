@@ -113,7 +113,12 @@ fn interval(outcome: &Outcome, width: u16, pen: &Pen<'_>) -> String {
 
 fn chance(scene: &Scene<'_>, tried: &Tried, width: u16, pen: &Pen<'_>) -> String {
     let Some([low, high]) = scene.band_mmhg() else {
-        return if width < 46 { "goal unknown: chart the pH" } else { "goal unknown: chart the pH, or type a PaCO2" }.to_owned();
+        return if width < 46 {
+            "goal unknown: chart the pH"
+        } else {
+            "goal unknown: chart the pH, or type a PaCO2"
+        }
+        .to_owned();
     };
     let band = pen.face.gas_range(Some(low), Some(high));
     match tried.outcome.interval.chance_on_target {

@@ -72,7 +72,9 @@ pub fn draw(state: &State, layout: &Layout, pen: &mut Pen<'_>) {
 fn keys(when: When, layout: &Layout, pen: &mut Pen<'_>) {
     let parts: Vec<(&str, &str)> =
         rows(when).filter(|row| !row.foot.is_empty()).map(|row| (first_keys(row.shown), row.foot)).collect();
-    let wide = |(keys, does): &(&str, &str)| u16::try_from(keys.chars().count() + does.len() + 3).unwrap_or(u16::MAX);
+    let wide = |(keys, does): &(&str, &str)| {
+        u16::try_from(keys.chars().count() + does.len() + 3).unwrap_or(u16::MAX)
+    };
     let help = parts.iter().position(|(keys, _)| *keys == "?");
     let end = layout.foot.width.saturating_sub(help.and_then(|at| parts.get(at)).map_or(0, wide));
     let mut x = 1;

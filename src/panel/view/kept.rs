@@ -89,7 +89,11 @@ pub fn draw(state: &State, scene: &Scene<'_>, area: Rect, pen: &mut Pen<'_>) {
     }
     if columns.len() == 2 {
         let said = "No trial is kept yet: s, then 1, 2 or 3, keeps what is tried.";
-        let beside = Rect { x: area.x + NAME + 2 * COLUMN + 3, width: area.width.saturating_sub(NAME + 2 * COLUMN + 3), ..area };
+        let beside = Rect {
+            x: area.x + NAME + 2 * COLUMN + 3,
+            width: area.width.saturating_sub(NAME + 2 * COLUMN + 3),
+            ..area
+        };
         pen.wrapped(beside, 0, said, pen.theme.plain());
     }
     for (y, (name, cell)) in (1..area.height).zip(&rows) {

@@ -148,10 +148,13 @@ fn shown(id: LineId, dialled: &Dialled, scene: &Scene<'_>, pen: &Pen<'_>) -> Str
         Held::Number(value) => {
             match id.key(dialled.settings.timing).map(crate::quantity::input::Key::input) {
                 Some(input) if input.dimension == Dimension::Ratio => ratio(value),
-            // A pressure matched to a volume is rarely whole, and what is shown is what is forecast.
-            Some(input) if input.dimension == Dimension::AirwayPressure && (value - value.round()).abs() > 0.05 => {
-                number(value, 1)
-            }
+                // A pressure matched to a volume is rarely whole, and what is shown is what is forecast.
+                Some(input)
+                    if input.dimension == Dimension::AirwayPressure
+                        && (value - value.round()).abs() > 0.05 =>
+                {
+                    number(value, 1)
+                }
                 Some(input) => pen.face.value(value, input.dimension),
                 None => String::new(),
             }
@@ -181,7 +184,8 @@ fn name(id: LineId, scene: &Scene<'_>, timing: Timing, room: u16) -> (String, &'
     };
     let names = [full, full.trim_start_matches("if "), short(full), shortest(full)];
     let tries = names.iter().flat_map(|name| [(*name, word), (*name, cut)]);
-    let (name, word) = tries.into_iter().find(|(name, word)| fits(name, word)).unwrap_or((shortest(full), cut));
+    let (name, word) =
+        tries.into_iter().find(|(name, word)| fits(name, word)).unwrap_or((shortest(full), cut));
     (if word.is_empty() { name.to_owned() } else { format!("{name} {word}") }, unit)
 }
 
