@@ -87,7 +87,7 @@ impl Layout {
         let (follows_place, limits_place) = if wide {
             let middle = 54;
             (
-                Rect { x: body.x + left + 2, width: middle - 2, ..body },
+                Rect { x: body.x + left + 2, width: middle - 3, ..body },
                 Rect { x: body.x + left + middle + 1, width: area.width - left - middle - 1, ..body },
             )
         } else {
