@@ -52,8 +52,9 @@ pub fn restore() {
         return;
     }
     let mut out = io::stdout();
-    let _ = execute!(out, DisableMouseCapture, DisableBracketedPaste, LeaveAlternateScreen, cursor::Show);
+    // First the keys, so that a terminal which shows its first screen again is whole.
     let _ = disable_raw_mode();
+    let _ = execute!(out, DisableMouseCapture, DisableBracketedPaste, LeaveAlternateScreen, cursor::Show);
     let _ = out.flush();
 }
 

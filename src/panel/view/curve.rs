@@ -252,6 +252,13 @@ fn step_sentence(
     };
     let unit = pen.face.unit;
     let value = line::value(line, &tried.dialled, &scene.forecaster)?;
+    let own = scene.forecaster.baseline().mechanics.trigger_rate_per_min;
+    if let (LineId::Rate, Some(own)) = (line, own.filter(|own| *own > value)) {
+        let own = number(own, 0);
+        return Some(format!(
+            "The patient breathes {own}/min in all: a set rate below that does not move PaCO2."
+        ));
+    }
     let Some(more) = paco2_at(scene, state, tried, line, value + step) else {
         return Some(format!("One step more of {} cannot be dialled.", line.name(timing)));
     };

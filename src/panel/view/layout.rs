@@ -79,7 +79,7 @@ impl Layout {
         let below = row(2 + body_height, view_height);
         let left = match area.width {
             0..80 => 32,
-            80..100 => 37,
+            80..100 => 38,
             100..WIDE => 42,
             _ => 46,
         };
