@@ -17,4 +17,5 @@ pub mod read;
 pub mod record;
 pub mod settings;
 pub mod slots;
+pub mod struck;
 pub mod write;

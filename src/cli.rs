@@ -7,6 +7,7 @@ mod chart;
 pub mod checked;
 mod clock;
 pub mod complaint;
+mod note;
 #[cfg(feature = "panel")]
 mod panel;
 mod review;
@@ -74,7 +75,10 @@ pub fn run() -> ExitCode {
         Err(error) => {
             // Help and version are answers; everything else is usage.
             let status = if error.use_stderr() { Status::BadInput } else { Status::Done };
-            return if error.print().is_ok() { status.into() } else { Status::Unreadable.into() };
+            return match error.print() {
+                Err(unwritten) if unwritten.kind() != io::ErrorKind::BrokenPipe => Status::Unreadable.into(),
+                _ => status.into(),
+            };
         }
     };
     print(&dispatch(&matches))
@@ -97,6 +101,7 @@ fn dispatch(matches: &ArgMatches) -> Said {
         Some(("plan", matches)) => answer::plan(matches, colour),
         Some(("forecast", matches)) => answer::forecast(matches, colour),
         Some(("chart", matches)) => chart::chart(matches, colour),
+        Some(("note", matches)) => note::note(matches, colour),
         Some(("review", matches)) => review::review(matches, colour),
         Some(("check", matches)) => answer::check(matches, colour),
         Some(("profiles", matches)) => answer::profiles(matches, colour),

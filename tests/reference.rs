@@ -18,5 +18,7 @@
 mod computed;
 #[path = "reference/published.rs"]
 mod published;
+#[path = "reference/published_breaths.rs"]
+mod published_breaths;
 #[path = "reference/table.rs"]
 mod table;

@@ -117,6 +117,24 @@ pub enum InForce {
 }
 
 impl InForce {
+    /// Inspired oxygen in force, fraction.
+    pub const fn fio2(&self) -> Option<f64> {
+        match self {
+            Self::Mandatory(settings) => settings.fio2,
+            Self::Support { fio2, .. } => *fio2,
+            Self::Missing(_) => None,
+        }
+    }
+
+    /// PEEP in force, cmH2O.
+    pub const fn peep_cmh2o(&self) -> Option<f64> {
+        match self {
+            Self::Mandatory(settings) => settings.peep_cmh2o,
+            Self::Support { peep_cmh2o, .. } => *peep_cmh2o,
+            Self::Missing(_) => None,
+        }
+    }
+
     /// The settings, when a mandatory mode is complete.
     pub const fn mandatory(&self) -> Option<&Settings> {
         match self {

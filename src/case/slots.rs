@@ -37,6 +37,16 @@ pub fn patient_slot(patient: &mut Patient, key: Key) -> Option<&mut Option<f64>>
     PATIENT.iter().find(|slot| slot.key == key).map(|slot| (slot.open)(patient))
 }
 
+/// The value of `key` in `plan`; `None` when it is not given or not a single number of plans.
+pub fn plan_value(plan: &ChartedPlan, key: Key) -> Option<f64> {
+    PLAN.iter().find(|slot| slot.key == key).and_then(|slot| (slot.get)(plan))
+}
+
+/// The value of `key` in `observation`; `None` when it is not given or not a key of observations, or their minute.
+pub fn observation_value(observation: &Observation, key: Key) -> Option<f64> {
+    OBSERVATION.iter().find(|slot| slot.key == key).and_then(|slot| (slot.get)(observation))
+}
+
 /// The field of `key` in `observation`; `None` when it is not a key of observations, or their minute.
 pub fn observation_slot(observation: &mut Observation, key: Key) -> Option<&mut Option<f64>> {
     OBSERVATION.iter().find(|slot| slot.key == key).map(|slot| (slot.open)(observation))

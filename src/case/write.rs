@@ -99,7 +99,7 @@ fn number(value: f64, dimension: Dimension) -> String {
 }
 
 /// A time with its offset, as TOML has it: `2026-03-04T08:10:00+01:00`.
-fn moment(moment: Moment) -> String {
+pub(super) fn moment(moment: Moment) -> String {
     let minutes = moment.offset.seconds() / 60;
     let sign = if minutes < 0 { '-' } else { '+' };
     // TOML knows offsets of whole minutes only; the instant is the same whatever the offset.

@@ -2,7 +2,7 @@
 
 use clap::ArgMatches;
 
-use super::arguments::command;
+use super::arguments::{command, flag_of};
 use super::checked::{Checked, CheckedFile};
 use super::source::{Opened, bytes, named, open, sentence};
 use super::{Colours, Said, Status, complaint, trial};
@@ -24,6 +24,9 @@ use crate::quantity::show::PressureUnit;
 
 /// The case shown when none is named.
 pub const DEMONSTRATION: &str = "injured-lungs";
+
+/// Columns for the names of a list.
+const NAMES: usize = 26;
 
 /// What a command says, or why it cannot.
 pub type Answer = Result<Said, Said>;
@@ -90,8 +93,11 @@ pub fn asked(matches: &ArgMatches, colours: Colours) -> Result<Asked, Said> {
     Ok(Asked::Profile)
 }
 
+/// The goal's flags read the quantity of another input: what they say must name the flag that was typed.
 fn renamed(mut problem: Problem, key: &'static str) -> Problem {
+    let typed = |key: &str| format!("--{} ", flag_of(key));
     for place in &mut problem.places {
+        problem.help = problem.help.replace(&typed(place.key), &typed(key));
         place.key = key;
     }
     problem
@@ -218,8 +224,15 @@ pub fn profiles(matches: &ArgMatches, _: Colours) -> Answer {
 /// `tidewright cases`.
 pub fn cases(matches: &ArgMatches, _: Colours) -> Answer {
     let summary = |preset: &Preset| {
-        let first = preset.text.lines().next().unwrap_or("");
-        first.trim_start_matches('#').trim().to_owned()
+        // The words above the case, to the end of the first line that ends a sentence.
+        let mut words = Vec::new();
+        for line in preset.text.lines().map_while(|line| line.strip_prefix('#')) {
+            words.push(line.trim());
+            if line.ends_with('.') {
+                break;
+            }
+        }
+        words.join(" ")
     };
     listed(matches, "case", &CASES, &summary)
 }
@@ -248,7 +261,11 @@ fn listed(
             .collect();
         return Ok(Said::answer(as_json(&objects)?, Status::Done));
     }
-    let lines: Vec<String> = list.iter().map(|(name, summary)| format!("{name:<26}{summary}\n")).collect();
+    let (face, later) = (face(matches), " ".repeat(NAMES));
+    let lines: Vec<String> = list
+        .iter()
+        .map(|(name, summary)| format!("{}\n", face.wrapped(summary, &format!("{name:<NAMES$}"), &later)))
+        .collect();
     Ok(Said::answer(lines.concat(), Status::Done))
 }
 

@@ -21,9 +21,11 @@ use crate::case::presets;
 use crate::case::problem::Problem;
 use crate::case::read;
 use crate::case::record::Record;
+use crate::note::reckoning_lines;
 use crate::planning::baseline::Baseline;
 use crate::planning::charted::charted;
 use crate::planning::plan::{Plan, Request, plan as make_plan};
+use crate::planning::reckoning::reckon;
 
 /// A later entry may be charted up to this long ahead of this machine's clock without a word, minutes.
 const AHEAD_MIN: f64 = 10.0;
@@ -83,6 +85,10 @@ pub fn chart(matches: &ArgMatches, colours: Colours) -> Answer {
             "Another program had added {} since this one read the file: look at the record.",
             counted(added.meanwhile)
         ));
+    }
+    let reckoned = reckon(&added.record);
+    for reckoning in reckoned.reckonings.iter().filter(|it| added.numbers.contains(&it.gas_entry)) {
+        remarks.extend(reckoning_lines::one(reckoning, face(matches)));
     }
     told(matches, &opened, &added, &remarks)
 }

@@ -2,9 +2,10 @@
 
 use super::face::Face;
 use crate::case::profile::LimitId;
-use crate::planning::answer::SettingsReport;
+use crate::planning::answer::{Now, SettingsReport};
 use crate::planning::limits::{LimitVerdict, Verdict, rests_on_trapping};
 use crate::planning::outcome::Outcome;
+use crate::quantity::show::number;
 use crate::quantity::unit::Dimension;
 
 /// Width of the row names.
@@ -20,25 +21,15 @@ pub struct Column<'a> {
     pub settings: &'a SettingsReport,
     /// What that leads to.
     pub outcome: &'a Outcome,
-    /// The unrounded answer, for the value that was moved: rate or volume.
-    pub moved: Moved,
     /// True where trapping rests on an assumed resistance.
     pub trapping_assumed: bool,
     /// True where CO2 output, and so useful and wasted ventilation, is only estimated.
     pub output_estimated: bool,
 }
 
-/// Which dialled value a plan moved.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub enum Moved {
-    /// None.
-    Nothing,
-    /// The rate.
-    Rate,
-    /// The volume or inspiratory pressure.
-    Volume,
-    /// Both.
-    Both,
+/// The head of the column for now: whether its PaCO2 was measured or is itself a forecast.
+pub fn now_title(now: &Now) -> String {
+    now.paco2_is.replace("measured", "now").replace("forecast", "now, forecast")
 }
 
 /// One row of the table.
@@ -51,50 +42,70 @@ pub fn row(name: &str, cells: impl Iterator<Item = String>) -> String {
     line.trim_end().to_owned()
 }
 
-fn marked(text: String, moved: bool) -> String {
-    if moved { format!("*{text}") } else { text }
-}
-
 /// The rows of the table, heads first.
 pub fn table(columns: &[Column<'_>], face: Face) -> Vec<String> {
-    let mut rows = vec![row("", columns.iter().map(|column| column.title.clone()))];
-    dialled(columns, face, &mut rows);
+    let mut dial = Vec::new();
+    dialled(columns, face, &mut dial);
+    let starred = dial.iter().any(|row| row.contains('*'));
+    let legend = if starred { "* to be changed" } else { "" };
+    let mut rows = vec![row(legend, columns.iter().map(|column| column.title.clone()))];
+    rows.append(&mut dial);
     gas(columns, face, &mut rows);
     breath(columns, face, &mut rows);
     limits(columns, face, &mut rows);
     rows
 }
 
+/// When a row of what is dialled is shown.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+enum Row {
+    /// Always.
+    Always,
+    /// Where a column differs from now.
+    Changed,
+    /// The same, without a star: the ventilator moves it by itself when flow or I:E is held.
+    Follows,
+}
+
+/// What is dialled: rate and volume always, the rest where a column differs from now.
 fn dialled(columns: &[Column<'_>], face: Face, rows: &mut Vec<String>) {
-    rows.push(row(
-        "set rate, 1/min",
-        columns.iter().map(|column| {
-            let moved = matches!(column.moved, Moved::Rate | Moved::Both);
-            marked(face.value(column.settings.rate_per_min, Dimension::Rate), moved)
-        }),
-    ));
-    let mut volume = |name: &str, value: fn(&SettingsReport) -> Option<f64>, dimension| {
-        if columns.iter().any(|column| value(column.settings).is_some()) {
-            let cells = columns.iter().map(|column| {
-                let moved = matches!(column.moved, Moved::Volume | Moved::Both);
-                value(column.settings)
-                    .map_or_else(String::new, |value| marked(face.value(value, dimension), moved))
-            });
-            rows.push(row(name, cells));
+    let mut line = |name: &str, value: fn(&SettingsReport) -> Option<f64>, dimension, kind: Row| {
+        let cells: Vec<String> = columns
+            .iter()
+            .map(|column| {
+                value(column.settings).map_or_else(String::new, |value| face.value(value, dimension))
+            })
+            .collect();
+        let now = cells.first().cloned().unwrap_or_default();
+        let changed = cells.iter().any(|cell| *cell != now);
+        if changed || (kind == Row::Always && !now.is_empty()) {
+            let plain = |cell: &str| cell == now || cell.is_empty() || kind == Row::Follows;
+            let marked = |cell: String| if plain(&cell) { cell } else { format!("*{cell}") };
+            rows.push(row(name, cells.into_iter().map(marked)));
         }
     };
-    volume("set tidal volume, mL", |settings| settings.tidal_volume_ml, Dimension::Volume);
-    volume(
+    line("set rate, breaths/min", |settings| Some(settings.rate_per_min), Dimension::Rate, Row::Always);
+    line("set tidal volume, mL", |settings| settings.tidal_volume_ml, Dimension::Volume, Row::Always);
+    line(
         "inspiratory pressure, cmH2O",
         |settings| settings.inspiratory_pressure_cmh2o,
         Dimension::AirwayPressure,
+        Row::Always,
+    );
+    line("set PEEP, cmH2O", |settings| settings.peep_cmh2o, Dimension::AirwayPressure, Row::Changed);
+    line("FiO2", |settings| settings.fio2, Dimension::Fraction, Row::Changed);
+    line("inspiratory time, s", |settings| Some(settings.inspiratory_time_s), Dimension::Time, Row::Follows);
+    line(
+        "apparatus dead space, mL",
+        |settings| Some(settings.apparatus_dead_space_ml),
+        Dimension::Volume,
+        Row::Changed,
     );
 }
 
 fn gas(columns: &[Column<'_>], face: Face, rows: &mut Vec<String>) {
     let unit = face.unit.word();
-    let gas = |mmhg: f64| face.value(mmhg, Dimension::GasPressure);
-    rows.push(row(&format!("PaCO2, {unit}"), columns.iter().map(|c| gas(c.outcome.state.paco2_mmhg))));
+    rows.push(row(&format!("PaCO2, {unit}"), columns.iter().map(|c| face.paco2(c.outcome.state.paco2_mmhg))));
     let uncertain = |column: &&Column<'_>| column.outcome.interval.paco2_expected_mmhg.is_some();
     if columns.iter().any(|column| uncertain(&column)) {
         let cells = |value: &dyn Fn(&Column<'_>) -> String| -> Vec<String> {
@@ -103,7 +114,7 @@ fn gas(columns: &[Column<'_>], face: Face, rows: &mut Vec<String>) {
                 .map(|column| if uncertain(&column) { value(column) } else { String::new() })
                 .collect()
         };
-        let expected = cells(&|c| face.known(c.outcome.interval.paco2_expected_mmhg, Dimension::GasPressure));
+        let expected = cells(&|c| face.known_paco2(c.outcome.interval.paco2_expected_mmhg));
         rows.push(row("  expected, all gases heard", expected.into_iter()));
         let half = cells(&|c| {
             let interval = &c.outcome.interval;
@@ -119,7 +130,7 @@ fn gas(columns: &[Column<'_>], face: Face, rows: &mut Vec<String>) {
             c.outcome
                 .interval
                 .chance_on_target
-                .map_or_else(String::new, |chance| format!("{:.0} %", chance * 100.0))
+                .map_or_else(|| "unknown".to_owned(), |chance| format!("{:.0} %", chance * 100.0))
         });
         rows.push(row("  chance to land on the goal", chance.into_iter()));
     }
@@ -171,13 +182,15 @@ pub const fn dimension(id: LimitId) -> Dimension {
     }
 }
 
-/// The bounds of a limit in words: "≤30 cmH2O", "4–8 mL/kg".
+/// The bounds of a limit in words: "≤30 cmH2O", "4–8 mL/kg", "≤35/min".
 pub fn bounds(limit: &LimitVerdict, face: Face) -> String {
     let shown = |value: f64| face.value(value, dimension(limit.id));
     let unit = match (limit.id, face.unit.word()) {
         (LimitId::Paco2, word) => format!(" {word}"),
         (LimitId::Paco2FallPerHour, word) => format!(" {word}/h"),
         _ if limit.unit == "1" => String::new(),
+        // "35 1/min" could be read as 351.
+        _ if limit.unit.starts_with("1/") => limit.unit.trim_start_matches('1').to_owned(),
         _ => format!(" {}", limit.unit),
     };
     match (limit.min, limit.max) {
@@ -197,7 +210,18 @@ pub fn cell(limit: &LimitVerdict, trapping_assumed: bool, face: Face) -> String 
         _ => "",
     };
     debug_assert!(mark.is_empty() || rests_on_trapping(limit.id));
-    let shown = face.value(value, dimension(limit.id));
+    let mut shown = face.value(value, dimension(limit.id));
+    // "8 beyond" would stand oddly beside a bound of 8: a digit more tells them apart.
+    let bounds = [limit.min, limit.max].into_iter().flatten();
+    let bounds: Vec<String> = bounds.map(|bound| face.value(bound, dimension(limit.id))).collect();
+    if limit.verdict == Verdict::Beyond && bounds.contains(&shown) {
+        let in_unit = match dimension(limit.id) {
+            Dimension::GasPressure | Dimension::PressurePerHour => face.unit.from_mmhg(value),
+            _ => value,
+        };
+        let finer = (1..4).map(|digits| number(in_unit, digits)).find(|text| !bounds.contains(text));
+        shown = finer.unwrap_or(shown);
+    }
     format!("{mark}{shown} {}", limit.verdict.word())
 }
 

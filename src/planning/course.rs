@@ -14,6 +14,12 @@ const LATEST_GAS_MIN: f64 = 60.0;
 /// Times to draw are given in steps of this, minutes.
 const GAS_STEP_MIN: f64 = 5.0;
 
+/// When to draw the next gas after a change that takes `settled_minutes` to settle, minutes.
+pub fn next_gas_minutes(settled_minutes: f64) -> f64 {
+    let next = (settled_minutes / GAS_STEP_MIN).ceil() * GAS_STEP_MIN;
+    next.clamp(EARLIEST_GAS_MIN, LATEST_GAS_MIN)
+}
+
 /// PaCO2 and pH at a minute.
 #[derive(Debug, Clone, Copy, PartialEq, Serialize)]
 pub struct CoursePoint {
@@ -51,13 +57,7 @@ impl Course {
                 CoursePoint { minutes, paco2_mmhg, ph }
             })
             .collect();
-        let next = (settled_minutes / GAS_STEP_MIN).ceil() * GAS_STEP_MIN;
-        Self {
-            points,
-            settled_minutes,
-            next_gas_minutes: next.clamp(EARLIEST_GAS_MIN, LATEST_GAS_MIN),
-            curve,
-        }
+        Self { points, settled_minutes, next_gas_minutes: next_gas_minutes(settled_minutes), curve }
     }
 
     /// True when PaCO2 has not settled within the hour.

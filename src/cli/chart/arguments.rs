@@ -57,8 +57,8 @@ pub fn command() -> Command {
                 "observation",
                 "observation",
                 "KEYS",
-                "What was seen at a minute of the trial: minute=10,rate=24,tidal_volume=340,heart_rate=102,systolic_pressure=138,spo2=0.95 \
-                 (any of them, minute always). Without --trial-started it belongs to the trial that runs",
+                "What was seen at a minute of the trial: minute=10,rate=24,spo2=0.95 (minute always; any of rate, tidal_volume, \
+                 heart_rate, systolic_pressure, spo2). Without --trial-started it belongs to the trial that runs",
             )
             .action(ArgAction::Append)
             .help_heading(trial),

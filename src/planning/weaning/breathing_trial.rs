@@ -3,7 +3,6 @@
 use serde::Serialize;
 
 use super::published::{BOLES, rapid_shallow_breathing_index, stop};
-use super::values::fio2_in_force;
 use crate::case::entry::{Observation, TrialOutcome, TrialSupport};
 use crate::case::moment::Moment;
 use crate::case::record::{Occasion, Record};
@@ -155,22 +154,38 @@ fn start(trial: &TrialCourse, occasions: &[Occasion]) -> Start {
     }
 }
 
+type Seen = Vec<(Option<f64>, f64)>;
+
 fn criteria(trial: &TrialCourse, occasions: &[Occasion]) -> Vec<StopRow> {
     let start = start(trial, occasions);
-    let seen = |value: fn(&Observation) -> Option<f64>| -> Vec<(Option<f64>, f64)> {
-        trial.observations.iter().filter_map(|it| Some((Some(it.minute), value(it)?))).collect()
-    };
-    let rate = seen(|it| it.rate_per_min);
-    let heart = seen(|it| it.heart_rate_per_min);
-    let systolic = seen(|it| it.systolic_pressure_mmhg);
-    let index = seen(|it| Some(rapid_shallow_breathing_index(it.rate_per_min?, it.tidal_volume_ml?)));
-    let saturation = seen(|it| it.spo2);
-    let gases = Gases::of(trial, occasions);
-    let above = |bound: f64| move |value: f64, _: f64| value > bound;
-    let risen = |share: f64| move |value: f64, from: f64| value > from * (1.0 + share) + 1e-9;
-    let none = Some(0.0);
-    let rows = [
-        row("rate", "rate above 35/min", Dimension::Rate, &rate, none, above(stop::RATE_ABOVE)),
+    let mut rows = breathing(trial, start).to_vec();
+    rows.extend(circulation(trial, start));
+    rows.extend(blood(&Gases::of(trial, occasions)));
+    rows
+}
+
+fn seen(trial: &TrialCourse, value: fn(&Observation) -> Option<f64>) -> Seen {
+    trial.observations.iter().filter_map(|it| Some((Some(it.minute), value(it)?))).collect()
+}
+
+/// For a bound that needs no start.
+const ALWAYS: Option<f64> = Some(0.0);
+
+fn above(bound: f64) -> impl Fn(f64, f64) -> bool {
+    move |value, _| value > bound
+}
+
+fn risen(share: f64) -> impl Fn(f64, f64) -> bool {
+    move |value, from| value > from * (1.0 + share) + 1e-9
+}
+
+fn breathing(trial: &TrialCourse, start: Start) -> [StopRow; 4] {
+    let rate = seen(trial, |it| it.rate_per_min);
+    let index = seen(trial, |it| Some(rapid_shallow_breathing_index(it.rate_per_min?, it.tidal_volume_ml?)));
+    let saturation = seen(trial, |it| it.spo2);
+    let shallow = "rate/volume index above 105/min/L";
+    [
+        row("rate", "rate above 35/min", Dimension::Rate, &rate, ALWAYS, above(stop::RATE_ABOVE)),
         row(
             "rate_rise",
             "rate up by more than 50 %",
@@ -181,21 +196,29 @@ fn criteria(trial: &TrialCourse, occasions: &[Occasion]) -> Vec<StopRow> {
         ),
         row(
             "rapid_shallow_breathing_index",
-            "rate/volume index above 105/min/L",
+            shallow,
             Dimension::Volume,
             &index,
-            none,
+            ALWAYS,
             above(stop::RAPID_SHALLOW_ABOVE),
         ),
-        row("saturation", "SpO2 below 90 %", Dimension::Fraction, &saturation, none, |value, _| {
+        row("saturation", "SpO2 below 90 %", Dimension::Fraction, &saturation, ALWAYS, |value, _| {
             value < stop::SATURATION_BELOW
         }),
+    ]
+}
+
+fn circulation(trial: &TrialCourse, start: Start) -> [StopRow; 5] {
+    let heart = seen(trial, |it| it.heart_rate_per_min);
+    let systolic = seen(trial, |it| it.systolic_pressure_mmhg);
+    let pressure = Dimension::BloodPressure;
+    [
         row(
             "heart_rate",
             "heart rate above 140/min",
             Dimension::Rate,
             &heart,
-            none,
+            ALWAYS,
             above(stop::HEART_RATE_ABOVE),
         ),
         row(
@@ -209,15 +232,15 @@ fn criteria(trial: &TrialCourse, occasions: &[Occasion]) -> Vec<StopRow> {
         row(
             "systolic_pressure_high",
             "systolic pressure above 180 mmHg",
-            Dimension::BloodPressure,
+            pressure,
             &systolic,
-            none,
+            ALWAYS,
             above(stop::SYSTOLIC_ABOVE_MMHG),
         ),
         row(
             "systolic_pressure_rise",
             "systolic pressure up by more than 20 %",
-            Dimension::BloodPressure,
+            pressure,
             &systolic,
             start.systolic,
             risen(stop::SYSTOLIC_RISE),
@@ -225,28 +248,27 @@ fn criteria(trial: &TrialCourse, occasions: &[Occasion]) -> Vec<StopRow> {
         row(
             "systolic_pressure_low",
             "systolic pressure below 90 mmHg",
-            Dimension::BloodPressure,
+            pressure,
             &systolic,
-            none,
+            ALWAYS,
             |value, _| value < stop::SYSTOLIC_BELOW_MMHG,
         ),
-        row(
-            "paco2",
-            "PaCO2 above 50 mmHg",
-            Dimension::GasPressure,
-            &gases.paco2,
-            none,
-            above(stop::PACO2_ABOVE_MMHG),
-        ),
+    ]
+}
+
+fn blood(gases: &Gases) -> [StopRow; 5] {
+    let pressure = Dimension::GasPressure;
+    [
+        row("paco2", "PaCO2 above 50 mmHg", pressure, &gases.paco2, ALWAYS, above(stop::PACO2_ABOVE_MMHG)),
         row(
             "paco2_rise",
             "PaCO2 up by more than 8 mmHg",
-            Dimension::GasPressure,
+            pressure,
             &gases.paco2,
             gases.paco2_before,
             |value, from| value - from > stop::PACO2_RISE_MMHG + 1e-9,
         ),
-        row("ph", "pH below 7.32", Dimension::Ph, &gases.ph, none, |value, _| value < stop::PH_BELOW),
+        row("ph", "pH below 7.32", Dimension::Ph, &gases.ph, ALWAYS, |value, _| value < stop::PH_BELOW),
         row(
             "ph_fall",
             "pH down by 0.07 or more",
@@ -258,13 +280,12 @@ fn criteria(trial: &TrialCourse, occasions: &[Occasion]) -> Vec<StopRow> {
         row(
             "pao2",
             "PaO2 60 mmHg or less on FiO2 of 0.5 or more",
-            Dimension::GasPressure,
+            pressure,
             &gases.pao2_on_much,
-            none,
+            ALWAYS,
             |value, _| value <= stop::PAO2_MMHG,
         ),
-    ];
-    rows.into_iter().collect()
+    ]
 }
 
 /// A row from the values seen; `from` is what a rise starts from, `None` when it is not known.
@@ -293,9 +314,9 @@ fn row(
 /// Gases drawn during the trial, and the one before it.
 #[derive(Default)]
 struct Gases {
-    paco2: Vec<(Option<f64>, f64)>,
-    ph: Vec<(Option<f64>, f64)>,
-    pao2_on_much: Vec<(Option<f64>, f64)>,
+    paco2: Seen,
+    ph: Seen,
+    pao2_on_much: Seen,
     paco2_before: Option<f64>,
     ph_before: Option<f64>,
 }
@@ -319,8 +340,7 @@ impl Gases {
             } else if minute <= last + GAS_AFTER_MIN {
                 gases.paco2.extend(gas.paco2_mmhg.map(|value| (Some(minute), value)));
                 gases.ph.extend(gas.ph.map(|value| (Some(minute), value)));
-                let much =
-                    fio2_in_force(&occasion.in_force).is_some_and(|fio2| fio2 >= stop::PAO2_COUNTS_FROM_FIO2);
+                let much = occasion.in_force.fio2().is_some_and(|fio2| fio2 >= stop::PAO2_COUNTS_FROM_FIO2);
                 if much {
                     gases.pao2_on_much.extend(gas.pao2_mmhg.map(|value| (Some(minute), value)));
                 }

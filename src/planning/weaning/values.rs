@@ -1,7 +1,6 @@
 //! The values that readiness and indices rest on at one occasion, and how old the borrowed ones may be.
 
 use crate::case::record::{Occasion, Record};
-use crate::case::settings::InForce;
 use crate::physiology::carbon_dioxide::at_body_temperature;
 use crate::physiology::oxygen;
 use crate::physiology::weaning::rapid_shallow_breathing_index;
@@ -34,23 +33,6 @@ pub(super) struct Values {
     pub dead_space_fraction: Option<f64>,
 }
 
-fn peep_in_force(in_force: &InForce) -> Option<f64> {
-    match in_force {
-        InForce::Mandatory(settings) => settings.peep_cmh2o,
-        InForce::Support { peep_cmh2o, .. } => *peep_cmh2o,
-        InForce::Missing(_) => None,
-    }
-}
-
-/// FiO2 in force.
-pub(super) fn fio2_in_force(in_force: &InForce) -> Option<f64> {
-    match in_force {
-        InForce::Mandatory(settings) => settings.fio2,
-        InForce::Support { fio2, .. } => *fio2,
-        InForce::Missing(_) => None,
-    }
-}
-
 impl Values {
     pub(super) fn at(record: &Record, index: usize) -> Option<Self> {
         let now = record.occasions().get(index)?;
@@ -72,10 +54,10 @@ impl Values {
             heart_rate_per_min: weaning.heart_rate_per_min,
             systolic_pressure_mmhg: weaning.systolic_pressure_mmhg,
             spo2: now.entry.measured.spo2,
-            spo2_on_fio2: weaning.spo2_fraction_on.or_else(|| fio2_in_force(&now.in_force)),
-            pao2_fio2_mmhg: recent(&|it| Some(it.entry.gas.pao2_mmhg? / fio2_in_force(&it.in_force)?)),
+            spo2_on_fio2: weaning.spo2_fraction_on.or_else(|| now.in_force.fio2()),
+            pao2_fio2_mmhg: recent(&|it| Some(it.entry.gas.pao2_mmhg? / it.in_force.fio2()?)),
             arterial_over_alveolar_po2: recent(&|it| arterial_over_alveolar(record, it)),
-            peep_cmh2o: peep_in_force(&now.in_force),
+            peep_cmh2o: now.in_force.peep_cmh2o(),
             static_compliance_ml_cmh2o: recent(&static_compliance),
             dynamic_compliance_ml_cmh2o: recent(&dynamic_compliance),
             ventilatory_ratio: recent(&|it| ventilatory_ratio(it, kg)),
@@ -95,7 +77,7 @@ fn arterial_over_alveolar(record: &Record, it: &Occasion) -> Option<f64> {
     let barometric = patient.barometric_pressure_mmhg.unwrap_or_else(|| {
         patient.altitude_m.map_or(oxygen::SEA_LEVEL_MMHG, oxygen::barometric_at_altitude_mmhg)
     });
-    let alveolar = oxygen::alveolar_po2_mmhg(fio2_in_force(&it.in_force)?, barometric, gas.paco2_mmhg?);
+    let alveolar = oxygen::alveolar_po2_mmhg(it.in_force.fio2()?, barometric, gas.paco2_mmhg?);
     (alveolar > 0.0).then_some(gas.pao2_mmhg? / alveolar)
 }
 
