@@ -25,6 +25,9 @@ static WRITING: Mutex<()> = Mutex::new(());
 /// Whether the terminal is ours just now.
 static OURS: AtomicBool = AtomicBool::new(false);
 
+/// Whether the mouse is listened to, for coming back after a stop.
+static MOUSE: AtomicBool = AtomicBool::new(false);
+
 /// Waits until nobody writes.
 pub fn writing() -> MutexGuard<'static, ()> {
     WRITING.lock().unwrap_or_else(PoisonError::into_inner)
@@ -38,6 +41,7 @@ pub fn enter(mouse: bool) -> io::Result<()> {
     // We decide about colour; crossterm would otherwise still send an empty sequence that wipes reverse and bold.
     force_color_output(true);
     OURS.store(true, Ordering::SeqCst);
+    MOUSE.store(mouse, Ordering::SeqCst);
     enable_raw_mode()?;
     execute!(io::stdout(), EnterAlternateScreen, EnableBracketedPaste)?;
     if mouse {
@@ -52,8 +56,9 @@ pub fn restore() {
         return;
     }
     let mut out = io::stdout();
-    let _ = execute!(out, DisableMouseCapture, DisableBracketedPaste, LeaveAlternateScreen, cursor::Show);
+    // First the keys, so that a terminal which shows its first screen again is whole.
     let _ = disable_raw_mode();
+    let _ = execute!(out, DisableMouseCapture, DisableBracketedPaste, LeaveAlternateScreen, cursor::Show);
     let _ = out.flush();
 }
 
@@ -62,6 +67,7 @@ pub fn restore() {
 /// # Errors
 /// When the terminal refuses.
 pub fn mouse(on: bool) -> io::Result<()> {
+    MOUSE.store(on, Ordering::SeqCst);
     if on { execute!(io::stdout(), EnableMouseCapture) } else { execute!(io::stdout(), DisableMouseCapture) }
 }
 
@@ -90,7 +96,7 @@ pub fn restore_on_signals() -> io::Result<()> {
             if signal == SIGTSTP {
                 let _ = signal_hook::low_level::emulate_default_handler(SIGTSTP);
                 // Continued: the terminal is taken again, and the size "changed" so that all is drawn anew.
-                let _ = enter(true);
+                let _ = enter(MOUSE.load(Ordering::SeqCst));
                 drop(held);
                 let _ = signal_hook::low_level::raise(SIGWINCH);
             } else {

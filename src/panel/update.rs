@@ -120,7 +120,9 @@ fn lines(state: &State) -> Vec<LineId> {
 fn mark(state: &mut State, by: isize) {
     let lines = lines(state);
     let at = lines.iter().position(|line| *line == state.marked).unwrap_or(0);
-    let next = at.saturating_add_signed(by).min(lines.len().saturating_sub(1));
+    // Around the ends: the goal, the last line, is two keys above the rate.
+    let count = lines.len().max(1);
+    let next = (at + count).saturating_add_signed(by) % count;
     if let Some(line) = lines.get(next) {
         state.marked = *line;
     }

@@ -10,6 +10,7 @@
     reason = "a test stops at the first surprise; values that are dialled are exact"
 )]
 
+mod charting;
 mod docs;
 mod hands;
 mod random;

@@ -9,6 +9,11 @@ use super::{dial, path_of, suggested_name};
 pub fn ask(state: &mut State) -> Option<Effect> {
     match std::mem::replace(&mut state.mode, Mode::Look) {
         Mode::Form(form) if form.holds_anything() => state.mode = Mode::Leave(form),
+        Mode::Recover(kept) => {
+            // The question is not answered by leaving: it is asked again next time.
+            state.mode = Mode::Recover(kept);
+            return Some(Effect::Quit);
+        }
         Mode::Leave(form) => {
             // Asked a second time: still a question, never an answer.
             state.mode = Mode::Leave(form);

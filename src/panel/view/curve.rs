@@ -20,7 +20,8 @@ const HIGHEST_MMHG: f64 = 160.0;
 pub fn draw(state: &State, scene: &Scene<'_>, area: Rect, pen: &mut Pen<'_>) {
     let Ok(tried) = &scene.tried else { return };
     let line = turned_line(state, tried);
-    let said = lines(&sentence(scene, tried, line, area.height < 6, pen), area.width.saturating_sub(2));
+    let said =
+        lines(&sentence(scene, state, tried, line, area.height < 6, pen), area.width.saturating_sub(2));
     let rows = u16::try_from(said.len()).unwrap_or(1).min(area.height.saturating_sub(3).max(1));
     let above = Rect { height: area.height.saturating_sub(rows), ..area };
     let half = area.width / 2;
@@ -152,8 +153,15 @@ fn summit(scene: &Scene<'_>, tried: &Tried) -> Option<Summit> {
 }
 
 /// Why PaCO2 goes where it goes, in one sentence.
-fn sentence(scene: &Scene<'_>, tried: &Tried, line: LineId, short: bool, pen: &Pen<'_>) -> String {
-    let (now, then) = (&scene.now.state, &tried.outcome.state);
+fn sentence(
+    scene: &Scene<'_>,
+    state: &State,
+    tried: &Tried,
+    line: LineId,
+    short: bool,
+    pen: &Pen<'_>,
+) -> String {
+    let then = &tried.outcome.state;
     let gas = |mmhg: f64| pen.face.gas(mmhg);
     if tried.dialled.settings.control() == Control::Pressure
         && let Some(summit) = summit(scene, tried)
@@ -182,14 +190,14 @@ fn sentence(scene: &Scene<'_>, tried: &Tried, line: LineId, short: bool, pen: &P
     if let Some(share) = share_sentence(scene, tried, short) {
         return share;
     }
-    match line {
-        LineId::Peep | LineId::Fio2 => {
-            format!("{} does not move the forecast PaCO2.", line.row().name)
-        }
-        _ => step_sentence(scene, tried, line, short, pen).unwrap_or_else(|| {
-            format!("PaCO2 goes from {} to {}.", gas(now.paco2_mmhg), gas(then.paco2_mmhg))
-        }),
-    }
+    step_sentence(scene, state, tried, line, short, pen).unwrap_or_else(|| {
+        format!("{} does not move the forecast PaCO2.", capital(line.name(tried.dialled.settings.timing)))
+    })
+}
+
+fn capital(name: &str) -> String {
+    let mut letters = name.chars();
+    letters.next().map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
 }
 
 /// Where minute volume stays and the share of it that is useful moves: that is the reason.
@@ -224,9 +232,10 @@ fn share_sentence(scene: &Scene<'_>, tried: &Tried, short: bool) -> Option<Strin
     ))
 }
 
-/// What one step of a line buys from here, and what it bought from now.
+/// What one step of a line buys from here, and what it bought from now; `None` where it buys nothing.
 fn step_sentence(
     scene: &Scene<'_>,
+    state: &State,
     tried: &Tried,
     line: LineId,
     short: bool,
@@ -239,40 +248,59 @@ fn step_sentence(
         LineId::Rate => steps.rate_per_min,
         LineId::TidalVolume => steps.tidal_volume_ml,
         LineId::InspiratoryPressure => steps.inspiratory_pressure_cmh2o,
-        _ => return None,
+        _ => input.step,
     };
     let unit = pen.face.unit;
-    let buys = |dialled: &Dialled| {
-        let value = line::value(line, dialled, &scene.forecaster)?;
-        let more = match line {
-            LineId::Rate => dialled.with_rate(value + step),
-            _ => dialled.with_volume(value + step),
-        };
-        let change = scene.forecaster.paco2_mmhg(&more)? - scene.forecaster.paco2_mmhg(dialled)?;
-        Some(unit.from_mmhg(change))
-    };
-    let (here, there) = (buys(&tried.dialled)?, buys(&scene.now_dialled));
-    let signed = |value: f64| format!("{value:+.*}", unit.digits() + 1);
-    let step = crate::quantity::show::joined(&format!("+{}", number(step, 1)), input.unit());
-    if short {
-        let from_now = match there {
-            Some(there) if !scene.untouched() => format!(", {} from now", signed(there)),
-            _ => String::new(),
-        };
-        return Some(format!("{step} moves PaCO2 by {} {} here{from_now}.", signed(here), unit.word()));
+    let value = line::value(line, &tried.dialled, &scene.forecaster)?;
+    let own = scene.forecaster.baseline().mechanics.trigger_rate_per_min;
+    if let (LineId::Rate, Some(own)) = (line, own.filter(|own| *own > value)) {
+        let own = number(own, 0);
+        return Some(format!(
+            "The patient breathes {own}/min in all: a set rate below that does not move PaCO2."
+        ));
     }
-    let then = match there {
-        Some(there) if !scene.untouched() => format!("; from now it is {}", signed(there)),
-        _ => String::new(),
+    let Some(more) = paco2_at(scene, state, tried, line, value + step) else {
+        return Some(format!("One step more of {} cannot be dialled.", line.name(timing)));
     };
-    let flat = match there {
-        Some(there) if here.abs() < there.abs() * 0.85 => " The curve flattens: the same step buys less.",
-        _ => "",
+    let here = unit.from_mmhg(more - tried.outcome.state.paco2_mmhg);
+    if here.abs() < 1e-6 {
+        return None;
+    }
+    let there =
+        from_now(scene, line, step).map(|change| unit.from_mmhg(change)).filter(|_| !scene.untouched());
+    let signed = |value: f64| format!("{value:+.*}", unit.digits() + 1);
+    let amount = if input.dimension == Dimension::Ratio {
+        "expiration longer by a tenth of inspiration".to_owned()
+    } else {
+        crate::quantity::show::joined(&format!("+{}", number(step, 2)), input.unit())
+    };
+    if short {
+        let then = there.map_or_else(String::new, |there| format!(", {} from now", signed(there)));
+        return Some(format!("{amount} moves PaCO2 by {} {} here{then}.", signed(here), unit.word()));
+    }
+    let then = there.map_or_else(String::new, |there| format!("; from now it is {}", signed(there)));
+    let flat = if there.is_some_and(|there| here.abs() < there.abs() * 0.85) {
+        " The curve flattens: the same step buys less."
+    } else {
+        ""
     };
     Some(format!(
-        "One step more of {} ({step}) moves PaCO2 by {} {} from here{then}.{flat}",
+        "One step more of {} ({amount}) moves PaCO2 by {} {} from here{then}.{flat}",
         line.name(timing),
         signed(here),
         unit.word()
     ))
+}
+
+/// What one step of rate or volume buys from now, mmHg.
+fn from_now(scene: &Scene<'_>, line: LineId, step: f64) -> Option<f64> {
+    let now = &scene.now_dialled;
+    let more = match line {
+        LineId::Rate => now.with_rate(now.settings.rate_per_min + step),
+        LineId::TidalVolume | LineId::InspiratoryPressure if line.shown_in(now.settings.control()) => {
+            now.with_volume(now.volume() + step)
+        }
+        _ => return None,
+    };
+    Some(scene.forecaster.paco2_mmhg(&more)? - scene.forecaster.paco2_mmhg(now)?)
 }

@@ -105,7 +105,8 @@ fn interval(outcome: &Outcome, width: u16, pen: &Pen<'_>) -> String {
     let half = range(interval.paco2_half_low_mmhg, interval.paco2_half_high_mmhg);
     let wide = range(interval.paco2_low_mmhg, interval.paco2_high_mmhg);
     match width {
-        0..36 => format!("1 in 2 {half}, 9 in 10 {wide}"),
+        0..28 => format!("9 gases in 10 in {wide}"),
+        28..36 => format!("1 in 2 {half}, 9 in 10 {wide}"),
         36..48 => format!("1 gas in 2 in {half}, 9 in 10 in {wide}"),
         _ => format!("1 gas in 2 falls in {half}, 9 in 10 in {wide}"),
     }

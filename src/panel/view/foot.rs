@@ -11,7 +11,7 @@ use crate::panel::state::{Mode, State};
 const SAFETY: [&str; 3] = [
     "Decision support for trained clinicians. Confirm with a repeat gas. Local protocol and the responsible clinician decide.",
     "Decision support: confirm with a repeat gas; protocol and clinician decide.",
-    "Decision support. Repeat the gas; protocol, clinician decide.",
+    "Decision support: repeat the gas; the clinician decides.",
 ];
 
 /// A message takes at most this many rows, upwards from the keys.

@@ -79,7 +79,7 @@ impl Layout {
         let below = row(2 + body_height, view_height);
         let left = match area.width {
             0..80 => 32,
-            80..100 => 37,
+            80..100 => 38,
             100..WIDE => 42,
             _ => 46,
         };
@@ -87,7 +87,7 @@ impl Layout {
         let (follows_place, limits_place) = if wide {
             let middle = 54;
             (
-                Rect { x: body.x + left + 2, width: middle - 2, ..body },
+                Rect { x: body.x + left + 2, width: middle - 3, ..body },
                 Rect { x: body.x + left + middle + 1, width: area.width - left - middle - 1, ..body },
             )
         } else {

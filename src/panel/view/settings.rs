@@ -71,7 +71,7 @@ pub fn line_at(layout: &Layout, state: &State, scene: &Scene<'_>, at: Position) 
 const fn columns(width: u16) -> (u16, u16) {
     match width {
         0..36 => (22, 31),
-        36..40 => (27, 36),
+        36..40 => (28, 37),
         40..45 => (31, 40),
         _ => (34, 44),
     }
@@ -231,7 +231,7 @@ fn one(id: LineId, state: &State, scene: &Scene<'_>, area: Rect, y: u16, pen: &m
         pen.text(area, 0, y, "▸", theme.tried());
     }
     let names = Rect { width: now_end.saturating_sub(7), ..area };
-    let (name, unit) = name(id, scene, timing, names.width.saturating_sub(1));
+    let (name, unit) = name(id, scene, timing, names.width.saturating_sub(2));
     let x = pen.text(names, 1, y, &name, if marked { theme.heading() } else { theme.plain() });
     pen.text(names, x + 1, y, unit, theme.quiet());
     let now = match (id, timing, scene.now_dialled.settings.timing) {
