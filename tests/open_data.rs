@@ -5,6 +5,7 @@
     clippy::panic,
     clippy::indexing_slicing,
     clippy::print_stdout,
+    clippy::doc_markdown,
     reason = "a test may stop at the first surprise, and its figures are meant to be read with --nocapture"
 )]
 
