@@ -79,12 +79,15 @@ pub fn quantity_under(input: &'static Input, heading: &'static str) -> Arg {
         .value_name(if unit.is_empty() { "VALUE".to_owned() } else { unit.to_owned() })
         .allow_hyphen_values(true)
         .help_heading(heading)
-        .help(format!(
-            "{}{} ({range}; e.g. {})",
-            words.get(..1).unwrap_or("").to_uppercase(),
-            words.get(1..).unwrap_or(""),
-            input.example
-        ))
+        .help(format!("{} ({range}; e.g. {})", capital(words), input.example))
+}
+
+/// Words with a capital in front; "pH" keeps its own.
+fn capital(words: &str) -> String {
+    match (words.get(..1), words.get(1..)) {
+        (Some(first), Some(rest)) if !words.starts_with("pH") => first.to_uppercase() + rest,
+        _ => words.to_owned(),
+    }
 }
 
 fn tried(key: &'static str) -> Arg {
@@ -94,7 +97,10 @@ fn tried(key: &'static str) -> Arg {
         .allow_hyphen_values(true)
         .hide_short_help(true)
         .help_heading("What to try, when bedside numbers stand in place of CASE")
-        .help(format!("Try this {}", key.replace('_', " ")))
+        .help(format!(
+            "Try this {}",
+            key.replace('_', " ").replace("peep", "PEEP").replace("fio2", "FiO2").replace("co2", "CO2")
+        ))
 }
 
 /// A flag that is one of a few words.
@@ -150,14 +156,14 @@ fn plan_command() -> Command {
     )
     .after_long_help(format!(
         "Examples:\n  tidewright plan bed3.toml --to-paco2 50\n  tidewright plan injured-lungs --to-ph 7.32 --aim gentle\n  \
-         tidewright plan --sex female --height 163 --rate 22 --tidal-volume 380 --peep 10 \\\n    --paco2 63 --ph 7.24 --plateau 27 --to-paco2 50\n\n{SAFETY}"
+         tidewright plan --sex female --height 163 --rate 22 --tidal-volume 380 \\\n    --peep 10 --paco2 63 --ph 7.24 --plateau 27 --to-paco2 50\n\n{SAFETY}"
     ))
 }
 
 fn forecast_command() -> Command {
     bedside(Command::new("forecast").about("What named settings would lead to")).after_long_help(format!(
         "Examples:\n  tidewright forecast bed3.toml --rate 28 --tidal-volume 360\n  tidewright forecast bed3.toml --co2-production x0.9\n  \
-         tidewright forecast --rate 22 --tidal-volume 380 --paco2 63 --ph 7.24 --try-rate 28\n\n{SAFETY}"
+         tidewright forecast --rate 22 --tidal-volume 380 --paco2 63 --try-rate 28\n\n{SAFETY}"
     ))
 }
 

@@ -65,6 +65,7 @@ pub fn table(columns: &[Column<'_>], face: Face) -> Vec<String> {
         if columns.iter().any(|column| column.moved != Moved::Nothing) { "* to be changed" } else { "" };
     let mut rows = vec![row(legend, columns.iter().map(|column| column.title.clone()))];
     dialled(columns, face, &mut rows);
+    dialled_too(columns, face, &mut rows);
     gas(columns, face, &mut rows);
     breath(columns, face, &mut rows);
     limits(columns, face, &mut rows);
@@ -100,6 +101,29 @@ fn dialled(columns: &[Column<'_>], face: Face, rows: &mut Vec<String>) {
     );
 }
 
+/// One of the settings, where it is known.
+type Setting = fn(&SettingsReport) -> Option<f64>;
+
+/// What else is dialled, where a column differs from now: a plan that hangs on another apparatus or timing must say so.
+fn dialled_too(columns: &[Column<'_>], face: Face, rows: &mut Vec<String>) {
+    let Some(now) = columns.first().map(|column| column.settings) else { return };
+    if columns.iter().any(|column| column.settings.control != now.control) {
+        rows.push(row("control", columns.iter().map(|column| column.settings.control.to_owned())));
+    }
+    let others: [(&str, Dimension, Setting); 4] = [
+        ("set PEEP, cmH2O", Dimension::AirwayPressure, |settings| settings.peep_cmh2o),
+        ("FiO2", Dimension::Fraction, |settings| settings.fio2),
+        ("inspiratory time, s", Dimension::Time, |settings| Some(settings.inspiratory_time_s)),
+        ("apparatus dead space, mL", Dimension::Volume, |settings| Some(settings.apparatus_dead_space_ml)),
+    ];
+    for (name, dimension, value) in others {
+        let shown = |column: &Column<'_>| face.known(value(column.settings), dimension);
+        if columns.iter().any(|column| value(column.settings) != value(now)) {
+            rows.push(row(name, columns.iter().map(shown)));
+        }
+    }
+}
+
 fn gas(columns: &[Column<'_>], face: Face, rows: &mut Vec<String>) {
     let unit = face.unit.word();
     let gas = |mmhg: f64| face.value(mmhg, Dimension::GasPressure);
@@ -130,7 +154,9 @@ fn gas(columns: &[Column<'_>], face: Face, rows: &mut Vec<String>) {
                 .chance_on_target
                 .map_or_else(String::new, |chance| format!("{:.0} %", chance * 100.0))
         });
-        rows.push(row("  chance to land on the goal", chance.into_iter()));
+        if chance.iter().any(|chance| !chance.is_empty()) {
+            rows.push(row("  chance to land on the goal", chance.into_iter()));
+        }
     }
     rows.push(row("pH", columns.iter().map(|c| face.known(c.outcome.state.ph, Dimension::Ph))));
     if columns.iter().any(|c| c.outcome.state.end_tidal_co2_mmhg.is_some()) {

@@ -8,12 +8,24 @@ use crate::case::record::Record;
 use crate::planning::baseline::gas_exchange::Co2Evidence;
 use crate::planning::baseline::mechanics::TrappingEvidence;
 use crate::planning::plan::Forecast;
+use crate::planning::target::profile_band_mmhg;
 use crate::quantity::unit::Dimension;
 
 /// The forecast as text.
 pub fn of(forecast: &Forecast, record: &Record, face: Face) -> String {
     let mut lines = vec![patient_lines::patient(record, forecast.baseline.predicted_weight_kg, face)];
     lines.extend(patient_lines::gas(record, face));
+    // The chance in the table is of landing here.
+    let band = profile_band_mmhg(record.profile().target, forecast.baseline.base_excess_mmol_l);
+    if let Some([low, high]) = band {
+        let band = face.gas_range(Some(low), Some(high));
+        let name = &record.profile().name;
+        lines.push(face.wrapped(
+            &format!("Goal: the band of {name}, {band} {}.", face.unit.word()),
+            "",
+            "  ",
+        ));
+    }
     lines.push(String::new());
     let trapping_assumed = forecast.baseline.trapping_evidence == TrappingEvidence::Assumed;
     let output_estimated = forecast.baseline.co2_evidence == Co2Evidence::Estimated;

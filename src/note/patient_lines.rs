@@ -124,10 +124,15 @@ pub fn meaning(ph: Option<f64>, paco2: f64, face: Face) -> String {
     }
 }
 
+/// A value with its unit, or that it is unknown.
+fn measure(value: Option<f64>, dimension: Dimension, unit: &str, face: Face) -> String {
+    value.map_or_else(|| "unknown".to_owned(), |value| format!("{}{unit}", face.value(value, dimension)))
+}
+
 /// Where the numbers come from, one line each.
 pub fn origins(baseline: &BaselineReport, face: Face) -> Vec<String> {
     let mut lines = Vec::new();
-    let output = face.known(baseline.co2_production_ml_min, Dimension::GasOutput);
+    let output = measure(baseline.co2_production_ml_min, Dimension::GasOutput, " mL/min", face);
     let how = match baseline.co2_evidence {
         Co2Evidence::DeadSpace => "from the measured dead space",
         Co2Evidence::Co2Production => "measured",
@@ -135,7 +140,7 @@ pub fn origins(baseline: &BaselineReport, face: Face) -> Vec<String> {
         Co2Evidence::Estimated if baseline.co2_production_ml_min.is_some() => "estimated",
         Co2Evidence::Estimated => "no weight to estimate it from",
     };
-    lines.push(format!("CO2 output {output} mL/min ({how})"));
+    lines.push(format!("CO2 output {output} ({how})"));
     let share = baseline.dead_space_fraction.map_or_else(
         || "VD/VT unknown".to_owned(),
         |fraction| format!("VD/VT {}", face.value(fraction, Dimension::Fraction)),
@@ -146,8 +151,9 @@ pub fn origins(baseline: &BaselineReport, face: Face) -> Vec<String> {
         |f| format!("{:.0} % of the rest alveolar", f * 100.0),
     );
     lines.push(format!("{share}: {series} mL airway and apparatus, {fraction}"));
-    let compliance = face.known(baseline.compliance_ml_cmh2o, Dimension::Compliance);
-    let inspiratory = face.known(baseline.inspiratory_resistance_cmh2o_s_l, Dimension::Resistance);
+    let compliance = measure(baseline.compliance_ml_cmh2o, Dimension::Compliance, " mL/cmH2O", face);
+    let unit = if face.ascii { " cmH2O.s/L" } else { " cmH2O·s/L" };
+    let inspiratory = measure(baseline.inspiratory_resistance_cmh2o_s_l, Dimension::Resistance, unit, face);
     let expiratory = face.known(baseline.expiratory_resistance_cmh2o_s_l, Dimension::Resistance);
     let trapping = match baseline.trapping_evidence {
         TrappingEvidence::Measured => " (measured)",
@@ -155,11 +161,8 @@ pub fn origins(baseline: &BaselineReport, face: Face) -> Vec<String> {
         TrappingEvidence::Assumed => " (assumed equal)",
         TrappingEvidence::Unknown => "",
     };
-    lines.push(format!("Respiratory-system compliance {compliance} mL/cmH2O"));
-    lines.push(format!(
-        "Resistance {inspiratory} cmH2O{}s/L in, {expiratory} out{trapping}",
-        if face.ascii { "." } else { "·" }
-    ));
+    lines.push(format!("Respiratory-system compliance {compliance}"));
+    lines.push(format!("Resistance {inspiratory} in, {expiratory} out{trapping}"));
     if let Some(ratio) = baseline.ventilatory_ratio {
         lines.push(format!("Ventilatory ratio {} (about 1 in health)", face.value(ratio, Dimension::Number)));
     }

@@ -6,7 +6,7 @@ use super::baseline::mechanics::TrappingEvidence;
 use super::caution::Cautions;
 use super::course::Course;
 use super::dialled::Dialled;
-use super::forecast::{Forecaster, HeldReadings};
+use super::forecast::{Forecaster, Held, HeldReadings};
 use super::gentle::{Least, NoGentle};
 use super::outcome::Outcome;
 use super::solve::Summit;
@@ -60,18 +60,26 @@ fn of_dead_space(forecaster: &Forecaster<'_>, cautions: &mut Cautions) {
         );
     }
     if baseline.exchange.co2_evidence == Co2Evidence::Estimated {
+        let what = if baseline.exchange.co2_output_ml_min.is_some() {
+            "CO2 output is estimated, so useful and wasted ventilation are estimates too"
+        } else {
+            "CO2 output is unknown, so useful and wasted ventilation are unknown too"
+        };
         cautions.say(
             "co2_output_estimated",
-            "CO2 output is estimated, so useful and wasted ventilation are estimates too; the forecast PaCO2 does not hang \
-             on it. End-tidal CO2, CO2 production or VD/VT would fix it.",
+            format!(
+                "{what}; the forecast PaCO2 does not hang on it. End-tidal CO2, CO2 production or VD/VT would fix it."
+            ),
         );
     }
     if baseline.exchange.series_evidence == SeriesEvidence::Rule {
+        let rule =
+            if baseline.predicted_weight_kg.is_some() { "from predicted weight" } else { "as for any adult" };
         cautions.say(
             "airway_dead_space_by_rule",
             format!(
-                "Airway dead space ({:.0} mL) is assumed from predicted weight, a weak rule that matters when the tidal \
-                 volume changes. VD/VT together with end-tidal CO2 would measure it.",
+                "Airway dead space ({:.0} mL) is assumed {rule}, a weak rule that matters when the tidal volume changes. \
+                 VD/VT together with end-tidal CO2 would measure it.",
                 baseline.airway_by_rule_ml
             ),
         );
@@ -204,6 +212,22 @@ fn of_readings_at_bedside(record: &Record, now: &State, cautions: &mut Cautions)
             ),
         );
     }
+}
+
+/// Another way of holding dead space than the usual one, which every number then rests on.
+pub fn of_held(held: Held, cautions: &mut Cautions) {
+    let how = match held {
+        Held::Split => return,
+        Held::Volume => "all of the dead space stays a volume",
+        Held::Fraction => "all of the dead space stays a fraction of the breath",
+    };
+    cautions.say(
+        "held_as_asked",
+        format!(
+            "As asked, every forecast takes it that {how} when settings change; by default only the airway stays a \
+             volume. Compare with --held split."
+        ),
+    );
 }
 
 /// What holds for the settings under trial.
