@@ -1,6 +1,6 @@
 //! What a clinician asks: where the patient stands, what settings lead to, which settings reach the target.
 //!
-//! The engine takes only a checked [`Record`](crate::case::record::Record) and gives values; it reads no file and no clock.
+//! The engine takes only a checked [`Record`] and gives values; it reads no file and no clock.
 
 pub mod answer;
 pub mod baseline;

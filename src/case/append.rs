@@ -63,8 +63,15 @@ pub struct Appended {
 #[derive(Debug)]
 pub struct Hold {
     path: PathBuf,
-    /// Unlocked when it is dropped, also when the program is killed.
-    _lock: File,
+    /// Unlocked when it is dropped; the system does so when the program is killed.
+    lock: File,
+}
+
+impl Drop for Hold {
+    fn drop(&mut self) {
+        // Outright, since a process that is just being started by another thread shares the lock until it runs.
+        let _ = self.lock.unlock();
+    }
 }
 
 impl Hold {
@@ -80,7 +87,7 @@ impl Hold {
         let lock =
             File::options().create(true).truncate(false).write(true).open(lock_path).map_err(refused)?;
         match lock.try_lock() {
-            Ok(()) => Ok(Self { path, _lock: lock }),
+            Ok(()) => Ok(Self { path, lock }),
             Err(TryLockError::WouldBlock) => Err(AppendError::Elsewhere(path)),
             Err(TryLockError::Error(error)) => Err(refused(error)),
         }

@@ -93,11 +93,11 @@ pub fn asked(matches: &ArgMatches, colours: Colours) -> Result<Asked, Said> {
     Ok(Asked::Profile)
 }
 
-/// The problem of a flag that is read as another key: its help names the flag that was written.
+/// The goal's flags read the quantity of another input: what they say must name the flag that was typed.
 fn renamed(mut problem: Problem, key: &'static str) -> Problem {
+    let typed = |key: &str| format!("--{} ", flag_of(key));
     for place in &mut problem.places {
-        let (read_as, written) = (flag_of(place.key), flag_of(key));
-        problem.help = problem.help.replace(&format!("--{read_as} "), &format!("--{written} "));
+        problem.help = problem.help.replace(&typed(place.key), &typed(key));
         place.key = key;
     }
     problem

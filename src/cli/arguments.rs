@@ -60,7 +60,7 @@ fn heading(table: &str) -> &'static str {
     match table {
         "patient" => "The patient (in place of CASE)",
         "settings" => "Settings (with CASE: what to try; without: what is set now)",
-        "measured" => "Measurements (with CASE: CO2 output, compliance, resistance as what-if)",
+        "measured" => "Measurements (in place of CASE; with CASE three of them ask what if)",
         _ => "The arterial gas (in place of CASE)",
     }
 }
@@ -79,28 +79,45 @@ pub fn quantity_under(input: &'static Input, heading: &'static str) -> Arg {
         .value_name(if unit.is_empty() { "VALUE".to_owned() } else { unit.to_owned() })
         .allow_hyphen_values(true)
         .help_heading(heading)
-        .help(format!("{} ({range}; e.g. {})", capital(words), input.example))
+        .help(format!("{} ({range}; e.g. {})", as_sentence(words), input.example))
 }
 
-/// Words with a capital in front; "pH" keeps its own.
-fn capital(words: &str) -> String {
-    match (words.get(..1), words.get(1..)) {
-        (Some(first), Some(rest)) if !words.starts_with("pH") => first.to_uppercase() + rest,
+/// Says of the flags that are heard beside CASE what they ask there.
+fn what_if(flag: Arg, input: &Input) -> Arg {
+    let help = flag.get_help().map(ToString::to_string).unwrap_or_default();
+    match input.name {
+        "co2_production" => {
+            flag.help(format!("{help}. With CASE: what if it were this, or x0.9 of what it is"))
+        }
+        name if TRIAL_PATIENT.contains(&name) => {
+            flag.help(format!("{help}. With CASE: what if it were this"))
+        }
+        _ => flag,
+    }
+}
+
+/// With a capital at its head, but for "pH".
+fn as_sentence(words: &str) -> String {
+    let mut letters = words.chars();
+    match (letters.next(), letters.as_str()) {
+        (Some(first), rest) if !rest.starts_with(char::is_uppercase) => {
+            first.to_uppercase().chain(rest.chars()).collect()
+        }
         _ => words.to_owned(),
     }
 }
 
 fn tried(key: &'static str) -> Arg {
+    let input = INPUTS.iter().find(|input| input.name == key);
+    let words = input.map_or(key, |input| input.words);
+    let factor = if key == "co2_production" { ", or a factor of the present one: x0.9" } else { "" };
     Arg::new(format!("try_{key}"))
         .long(format!("try-{}", flag_of(key)))
         .value_name("VALUE")
         .allow_hyphen_values(true)
         .hide_short_help(true)
         .help_heading("What to try, when bedside numbers stand in place of CASE")
-        .help(format!(
-            "Try this {}",
-            key.replace('_', " ").replace("peep", "PEEP").replace("fio2", "FiO2").replace("co2", "CO2")
-        ))
+        .help(format!("Try this {words}{factor}"))
 }
 
 /// A flag that is one of a few words.
@@ -130,7 +147,7 @@ fn bedside(command: Command) -> Command {
         .arg(Arg::new("profile").long("profile").value_name("NAME").help("Limits and target band: a built-in profile or a file"))
         .arg(choice("steadiness", &["usual", "settled"], "How steady the patient is [default: as the case says, else usual]"))
         .args(words)
-        .args(bedside_inputs().map(quantity))
+        .args(bedside_inputs().map(|input| what_if(quantity(input), input)))
         .arg(choice("try_control", &["volume", "pressure"], "Try this control").hide_short_help(true).help_heading("What to try, when bedside numbers stand in place of CASE"))
         .args(tries)
 }
@@ -163,7 +180,7 @@ fn plan_command() -> Command {
 fn forecast_command() -> Command {
     bedside(Command::new("forecast").about("What named settings would lead to")).after_long_help(format!(
         "Examples:\n  tidewright forecast bed3.toml --rate 28 --tidal-volume 360\n  tidewright forecast bed3.toml --co2-production x0.9\n  \
-         tidewright forecast --rate 22 --tidal-volume 380 --paco2 63 --try-rate 28\n\n{SAFETY}"
+         tidewright forecast --rate 22 --tidal-volume 380 --paco2 63 --ph 7.24 --try-rate 28\n\n{SAFETY}"
     ))
 }
 

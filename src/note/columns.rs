@@ -2,7 +2,7 @@
 
 use super::face::Face;
 use crate::case::profile::LimitId;
-use crate::planning::answer::SettingsReport;
+use crate::planning::answer::{Now, SettingsReport};
 use crate::planning::limits::{LimitVerdict, Verdict, rests_on_trapping};
 use crate::planning::outcome::Outcome;
 use crate::quantity::show::number;
@@ -21,25 +21,15 @@ pub struct Column<'a> {
     pub settings: &'a SettingsReport,
     /// What that leads to.
     pub outcome: &'a Outcome,
-    /// The unrounded answer, for the value that was moved: rate or volume.
-    pub moved: Moved,
     /// True where trapping rests on an assumed resistance.
     pub trapping_assumed: bool,
     /// True where CO2 output, and so useful and wasted ventilation, is only estimated.
     pub output_estimated: bool,
 }
 
-/// Which dialled value a plan moved.
-#[derive(Debug, Clone, Copy, PartialEq)]
-pub enum Moved {
-    /// None.
-    Nothing,
-    /// The rate.
-    Rate,
-    /// The volume or inspiratory pressure.
-    Volume,
-    /// Both.
-    Both,
+/// The head of the column for now: whether its PaCO2 was measured or is itself a forecast.
+pub fn now_title(now: &Now) -> String {
+    now.paco2_is.replace("measured", "now").replace("forecast", "now, forecast")
 }
 
 /// One row of the table.
@@ -52,82 +42,70 @@ pub fn row(name: &str, cells: impl Iterator<Item = String>) -> String {
     line.trim_end().to_owned()
 }
 
-/// A dialled value, with a star where it is to be changed from `now`.
-fn marked(value: f64, now: Option<f64>, moved: bool, dimension: Dimension, face: Face) -> String {
-    let text = face.value(value, dimension);
-    let changed = now.is_none_or(|now| (value - now).abs() > 1e-9);
-    if moved && changed { format!("*{text}") } else { text }
-}
-
 /// The rows of the table, heads first.
 pub fn table(columns: &[Column<'_>], face: Face) -> Vec<String> {
-    let legend =
-        if columns.iter().any(|column| column.moved != Moved::Nothing) { "* to be changed" } else { "" };
+    let mut dial = Vec::new();
+    dialled(columns, face, &mut dial);
+    let starred = dial.iter().any(|row| row.contains('*'));
+    let legend = if starred { "* to be changed" } else { "" };
     let mut rows = vec![row(legend, columns.iter().map(|column| column.title.clone()))];
-    dialled(columns, face, &mut rows);
-    dialled_too(columns, face, &mut rows);
+    rows.append(&mut dial);
     gas(columns, face, &mut rows);
     breath(columns, face, &mut rows);
     limits(columns, face, &mut rows);
     rows
 }
 
+/// When a row of what is dialled is shown.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+enum Row {
+    /// Always.
+    Always,
+    /// Where a column differs from now.
+    Changed,
+    /// The same, without a star: the ventilator moves it by itself when flow or I:E is held.
+    Follows,
+}
+
+/// What is dialled: rate and volume always, the rest where a column differs from now.
 fn dialled(columns: &[Column<'_>], face: Face, rows: &mut Vec<String>) {
-    let now = columns.first().map(|column| column.settings);
-    rows.push(row(
-        "set rate, breaths/min",
-        columns.iter().map(|column| {
-            let moved = matches!(column.moved, Moved::Rate | Moved::Both);
-            let before = now.map(|settings| settings.rate_per_min);
-            marked(column.settings.rate_per_min, before, moved, Dimension::Rate, face)
-        }),
-    ));
-    let mut volume = |name: &str, value: fn(&SettingsReport) -> Option<f64>, dimension| {
-        if columns.iter().any(|column| value(column.settings).is_some()) {
-            let cells = columns.iter().map(|column| {
-                let moved = matches!(column.moved, Moved::Volume | Moved::Both);
-                let before = now.and_then(value);
-                value(column.settings)
-                    .map_or_else(String::new, |value| marked(value, before, moved, dimension, face))
-            });
-            rows.push(row(name, cells));
+    let mut line = |name: &str, value: fn(&SettingsReport) -> Option<f64>, dimension, kind: Row| {
+        let cells: Vec<String> = columns
+            .iter()
+            .map(|column| {
+                value(column.settings).map_or_else(String::new, |value| face.value(value, dimension))
+            })
+            .collect();
+        let now = cells.first().cloned().unwrap_or_default();
+        let changed = cells.iter().any(|cell| *cell != now);
+        if changed || (kind == Row::Always && !now.is_empty()) {
+            let plain = |cell: &str| cell == now || cell.is_empty() || kind == Row::Follows;
+            let marked = |cell: String| if plain(&cell) { cell } else { format!("*{cell}") };
+            rows.push(row(name, cells.into_iter().map(marked)));
         }
     };
-    volume("set tidal volume, mL", |settings| settings.tidal_volume_ml, Dimension::Volume);
-    volume(
+    line("set rate, breaths/min", |settings| Some(settings.rate_per_min), Dimension::Rate, Row::Always);
+    line("set tidal volume, mL", |settings| settings.tidal_volume_ml, Dimension::Volume, Row::Always);
+    line(
         "inspiratory pressure, cmH2O",
         |settings| settings.inspiratory_pressure_cmh2o,
         Dimension::AirwayPressure,
+        Row::Always,
     );
-}
-
-/// One of the settings, where it is known.
-type Setting = fn(&SettingsReport) -> Option<f64>;
-
-/// What else is dialled, where a column differs from now: a plan that hangs on another apparatus or timing must say so.
-fn dialled_too(columns: &[Column<'_>], face: Face, rows: &mut Vec<String>) {
-    let Some(now) = columns.first().map(|column| column.settings) else { return };
-    if columns.iter().any(|column| column.settings.control != now.control) {
-        rows.push(row("control", columns.iter().map(|column| column.settings.control.to_owned())));
-    }
-    let others: [(&str, Dimension, Setting); 4] = [
-        ("set PEEP, cmH2O", Dimension::AirwayPressure, |settings| settings.peep_cmh2o),
-        ("FiO2", Dimension::Fraction, |settings| settings.fio2),
-        ("inspiratory time, s", Dimension::Time, |settings| Some(settings.inspiratory_time_s)),
-        ("apparatus dead space, mL", Dimension::Volume, |settings| Some(settings.apparatus_dead_space_ml)),
-    ];
-    for (name, dimension, value) in others {
-        let shown = |column: &Column<'_>| face.known(value(column.settings), dimension);
-        if columns.iter().any(|column| value(column.settings) != value(now)) {
-            rows.push(row(name, columns.iter().map(shown)));
-        }
-    }
+    line("set PEEP, cmH2O", |settings| settings.peep_cmh2o, Dimension::AirwayPressure, Row::Changed);
+    line("FiO2", |settings| settings.fio2, Dimension::Fraction, Row::Changed);
+    line("inspiratory time, s", |settings| Some(settings.inspiratory_time_s), Dimension::Time, Row::Follows);
+    line(
+        "apparatus dead space, mL",
+        |settings| Some(settings.apparatus_dead_space_ml),
+        Dimension::Volume,
+        Row::Changed,
+    );
 }
 
 fn gas(columns: &[Column<'_>], face: Face, rows: &mut Vec<String>) {
     let unit = face.unit.word();
-    let gas = |mmhg: f64| face.value(mmhg, Dimension::GasPressure);
-    rows.push(row(&format!("PaCO2, {unit}"), columns.iter().map(|c| gas(c.outcome.state.paco2_mmhg))));
+    rows.push(row(&format!("PaCO2, {unit}"), columns.iter().map(|c| face.paco2(c.outcome.state.paco2_mmhg))));
     let uncertain = |column: &&Column<'_>| column.outcome.interval.paco2_expected_mmhg.is_some();
     if columns.iter().any(|column| uncertain(&column)) {
         let cells = |value: &dyn Fn(&Column<'_>) -> String| -> Vec<String> {
@@ -136,7 +114,7 @@ fn gas(columns: &[Column<'_>], face: Face, rows: &mut Vec<String>) {
                 .map(|column| if uncertain(&column) { value(column) } else { String::new() })
                 .collect()
         };
-        let expected = cells(&|c| face.known(c.outcome.interval.paco2_expected_mmhg, Dimension::GasPressure));
+        let expected = cells(&|c| face.known_paco2(c.outcome.interval.paco2_expected_mmhg));
         rows.push(row("  expected, all gases heard", expected.into_iter()));
         let half = cells(&|c| {
             let interval = &c.outcome.interval;
@@ -152,11 +130,9 @@ fn gas(columns: &[Column<'_>], face: Face, rows: &mut Vec<String>) {
             c.outcome
                 .interval
                 .chance_on_target
-                .map_or_else(String::new, |chance| format!("{:.0} %", chance * 100.0))
+                .map_or_else(|| "unknown".to_owned(), |chance| format!("{:.0} %", chance * 100.0))
         });
-        if chance.iter().any(|chance| !chance.is_empty()) {
-            rows.push(row("  chance to land on the goal", chance.into_iter()));
-        }
+        rows.push(row("  chance to land on the goal", chance.into_iter()));
     }
     rows.push(row("pH", columns.iter().map(|c| face.known(c.outcome.state.ph, Dimension::Ph))));
     if columns.iter().any(|c| c.outcome.state.end_tidal_co2_mmhg.is_some()) {

@@ -2,7 +2,6 @@
 
 use super::face::Face;
 use crate::planning::course::Course;
-use crate::quantity::unit::Dimension;
 
 /// Heights, low to high.
 const BLOCKS: [char; 8] = ['▁', '▂', '▃', '▄', '▅', '▆', '▇', '█'];
@@ -26,7 +25,7 @@ pub fn drawing(course: &Course, face: Face) -> String {
             })
         })
         .collect();
-    let end = |mmhg: f64| face.value(mmhg, Dimension::GasPressure);
+    let end = |mmhg: f64| face.paco2(mmhg);
     format!("{} {row} {} {} at 60 min", end(first), end(last), face.unit.word())
 }
 
@@ -36,16 +35,14 @@ pub fn words(course: &Course, face: Face) -> Vec<String> {
         .points
         .iter()
         .skip(1)
-        .map(|point| {
-            format!("{:.0} min {}", point.minutes, face.value(point.paco2_mmhg, Dimension::GasPressure))
-        })
+        .map(|point| format!("{:.0} min {}", point.minutes, face.paco2(point.paco2_mmhg)))
         .collect();
     let minutes = course.next_gas_minutes;
     let next = if course.settled_minutes > 0.0 {
         let settled = course.settled_minutes.ceil();
         format!("Settled after about {settled:.0} min. Draw the next gas {minutes:.0} min after the change.")
     } else {
-        format!("Nothing to settle: a gas tells from {minutes:.0} min on.")
+        format!("Hardly any change to wait for: a gas tells from {minutes:.0} min on.")
     };
     vec![at.join(face.dot()), next]
 }

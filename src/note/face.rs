@@ -1,6 +1,6 @@
 //! How a text is shown: units of gas pressure, plain ASCII or not, and the width it keeps to.
 
-use crate::quantity::show::{PressureUnit, show};
+use crate::quantity::show::{PressureUnit, paco2, show};
 use crate::quantity::unit::Dimension;
 
 /// A space at which no line is broken.
@@ -34,10 +34,27 @@ impl Face {
         format!("{} {}", self.value(mmhg, Dimension::GasPressure), self.unit.word())
     }
 
-    /// A range of gas pressures, without its unit.
+    /// A forecast PaCO2, without its unit; one that no patient reaches is only said to be over 200 mmHg.
+    pub fn paco2(self, mmhg: f64) -> String {
+        paco2(mmhg, self.unit)
+    }
+
+    /// The same where it may be unknown.
+    pub fn known_paco2(self, mmhg: Option<f64>) -> String {
+        mmhg.map_or_else(|| "unknown".to_owned(), |mmhg| self.paco2(mmhg))
+    }
+
+    /// A range of PaCO2, without its unit; without an upper end where that is beyond what a patient reaches.
     pub fn gas_range(self, low: Option<f64>, high: Option<f64>) -> String {
-        let end = |mmhg: Option<f64>| self.known(mmhg, Dimension::GasPressure);
-        format!("{}{}{}", end(low), self.dash(), end(high))
+        let end = |mmhg: f64| self.paco2(mmhg);
+        match (low, high) {
+            (Some(low), Some(_)) if end(low).starts_with("over") => end(low),
+            (Some(low), Some(high)) if end(high).starts_with("over") => format!("over {}", end(low)),
+            (Some(low), Some(high)) => format!("{}{}{}", end(low), self.dash(), end(high)),
+            // No upper end: some of the chance lies where no breath passes the dead space.
+            (Some(low), None) => format!("over {}", end(low)),
+            _ => "unknown".to_owned(),
+        }
     }
 
     /// A dash between the ends of a range.
@@ -109,9 +126,12 @@ mod tests {
     }
 
     #[test]
-    fn a_range_names_what_is_unknown() {
+    fn a_range_has_no_upper_end_that_no_patient_reaches() {
         let face = Face::default();
         assert_eq!(face.gas_range(Some(38.2), Some(66.9)), "38–67");
-        assert_eq!(face.gas_range(Some(38.2), None), "38–unknown");
+        assert_eq!(face.gas_range(Some(38.2), None), "over 38");
+        assert_eq!(face.gas_range(Some(90.0), Some(4865.0)), "over 90");
+        assert_eq!(face.gas_range(Some(254.0), Some(874.0)), "over 200");
+        assert_eq!(face.gas_range(None, Some(50.0)), "unknown");
     }
 }

@@ -1,6 +1,6 @@
 //! A forecast of one trial as plain text that fits 80 columns.
 
-use super::columns::{Column, Moved, table};
+use super::columns::{Column, now_title, table};
 use super::face::Face;
 use super::plan_text::{cautions, finish};
 use super::{SAFETY, course_line, patient_lines};
@@ -9,31 +9,20 @@ use crate::planning::baseline::gas_exchange::Co2Evidence;
 use crate::planning::baseline::mechanics::TrappingEvidence;
 use crate::planning::plan::Forecast;
 use crate::planning::target::profile_band_mmhg;
-use crate::quantity::unit::Dimension;
 
 /// The forecast as text.
 pub fn of(forecast: &Forecast, record: &Record, face: Face) -> String {
     let mut lines = vec![patient_lines::patient(record, forecast.baseline.predicted_weight_kg, face)];
     lines.extend(patient_lines::gas(record, face));
-    // The chance in the table is of landing here.
-    let band = profile_band_mmhg(record.profile().target, forecast.baseline.base_excess_mmol_l);
-    if let Some([low, high]) = band {
-        let band = face.gas_range(Some(low), Some(high));
-        let name = &record.profile().name;
-        lines.push(face.wrapped(
-            &format!("Goal: the band of {name}, {band} {}.", face.unit.word()),
-            "",
-            "  ",
-        ));
-    }
+    lines.extend(goal(forecast, record, face));
     lines.push(String::new());
     let trapping_assumed = forecast.baseline.trapping_evidence == TrappingEvidence::Assumed;
-    let output_estimated = forecast.baseline.co2_evidence == Co2Evidence::Estimated;
+    let output_estimated = forecast.baseline.co2_evidence == Co2Evidence::Estimated
+        && forecast.baseline.co2_production_ml_min.is_some();
     let now = Column {
-        title: forecast.now.paco2_is.replace("measured", "now").replace("forecast", "now (fcst)"),
+        title: now_title(&forecast.now),
         settings: &forecast.now.settings,
         outcome: &forecast.now.outcome,
-        moved: Moved::Nothing,
         trapping_assumed,
         output_estimated,
     };
@@ -41,7 +30,6 @@ pub fn of(forecast: &Forecast, record: &Record, face: Face) -> String {
         title: "try".to_owned(),
         settings: &forecast.settings,
         outcome: &forecast.trial,
-        moved: Moved::Nothing,
         trapping_assumed,
         output_estimated,
     };
@@ -54,7 +42,7 @@ pub fn of(forecast: &Forecast, record: &Record, face: Face) -> String {
     }
     lines.push(String::new());
     let held = &forecast.held;
-    let of = |mmhg: Option<f64>| face.known(mmhg, Dimension::GasPressure);
+    let of = |mmhg: Option<f64>| face.known_paco2(mmhg);
     lines.push(face.wrapped(
         &format!(
             "PaCO2 by how dead space is held: {} split (airway a volume, alveolar part a fraction), {} all a volume, {} \
@@ -74,4 +62,16 @@ pub fn of(forecast: &Forecast, record: &Record, face: Face) -> String {
     lines.push(String::new());
     lines.push(face.wrapped(SAFETY, "", ""));
     finish(&lines, face)
+}
+
+/// What the chance is a chance of: a forecast is asked for no goal of its own.
+fn goal(forecast: &Forecast, record: &Record, face: Face) -> Option<String> {
+    let profile = record.profile();
+    let [low, high] = profile_band_mmhg(profile.target, forecast.baseline.base_excess_mmol_l)?;
+    let band = face.gas_range(Some(low), Some(high));
+    Some(face.wrapped(
+        &format!("Goal PaCO2: the band of {}, {band} {}.", profile.name, face.unit.word()),
+        "",
+        "  ",
+    ))
 }

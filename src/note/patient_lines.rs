@@ -116,7 +116,7 @@ pub fn meaning(ph: Option<f64>, paco2: f64, face: Face) -> String {
         let [low, high] = NORMAL_PH;
         match ph {
             Some(ph) if !(low..=high).contains(&ph) => format!(
-                "PaCO2 within {band}, yet pH {}: the bicarbonate explains it, acute or as this patient's habit.",
+                "PaCO2 within {band}, yet pH {}: look at the bicarbonate, and at what this patient is used to.",
                 face.value(ph, Dimension::Ph)
             ),
             _ => format!("PaCO2 within {band}: ventilation fits the CO2 made."),
@@ -124,15 +124,10 @@ pub fn meaning(ph: Option<f64>, paco2: f64, face: Face) -> String {
     }
 }
 
-/// A value with its unit, or that it is unknown.
-fn measure(value: Option<f64>, dimension: Dimension, unit: &str, face: Face) -> String {
-    value.map_or_else(|| "unknown".to_owned(), |value| format!("{}{unit}", face.value(value, dimension)))
-}
-
 /// Where the numbers come from, one line each.
 pub fn origins(baseline: &BaselineReport, face: Face) -> Vec<String> {
     let mut lines = Vec::new();
-    let output = measure(baseline.co2_production_ml_min, Dimension::GasOutput, " mL/min", face);
+    let estimated = baseline.co2_evidence == Co2Evidence::Estimated;
     let how = match baseline.co2_evidence {
         Co2Evidence::DeadSpace => "from the measured dead space",
         Co2Evidence::Co2Production => "measured",
@@ -140,10 +135,14 @@ pub fn origins(baseline: &BaselineReport, face: Face) -> Vec<String> {
         Co2Evidence::Estimated if baseline.co2_production_ml_min.is_some() => "estimated",
         Co2Evidence::Estimated => "no weight to estimate it from",
     };
+    let output = with_unit(baseline.co2_production_ml_min, Dimension::GasOutput, "mL/min", face);
     lines.push(format!("CO2 output {output} ({how})"));
     let share = baseline.dead_space_fraction.map_or_else(
         || "VD/VT unknown".to_owned(),
-        |fraction| format!("VD/VT {}", face.value(fraction, Dimension::Fraction)),
+        |fraction| {
+            let mark = if estimated { " (estimated)" } else { "" };
+            format!("VD/VT {}{mark}", face.value(fraction, Dimension::Fraction))
+        },
     );
     let series = face.value(baseline.series_dead_space_ml, Dimension::Volume);
     let fraction = baseline.alveolar_dead_space_fraction.map_or_else(
@@ -151,18 +150,9 @@ pub fn origins(baseline: &BaselineReport, face: Face) -> Vec<String> {
         |f| format!("{:.0} % of the rest alveolar", f * 100.0),
     );
     lines.push(format!("{share}: {series} mL airway and apparatus, {fraction}"));
-    let compliance = measure(baseline.compliance_ml_cmh2o, Dimension::Compliance, " mL/cmH2O", face);
-    let unit = if face.ascii { " cmH2O.s/L" } else { " cmH2O·s/L" };
-    let inspiratory = measure(baseline.inspiratory_resistance_cmh2o_s_l, Dimension::Resistance, unit, face);
-    let expiratory = face.known(baseline.expiratory_resistance_cmh2o_s_l, Dimension::Resistance);
-    let trapping = match baseline.trapping_evidence {
-        TrappingEvidence::Measured => " (measured)",
-        TrappingEvidence::Given => " (given)",
-        TrappingEvidence::Assumed => " (assumed equal)",
-        TrappingEvidence::Unknown => "",
-    };
+    let compliance = with_unit(baseline.compliance_ml_cmh2o, Dimension::Compliance, "mL/cmH2O", face);
     lines.push(format!("Respiratory-system compliance {compliance}"));
-    lines.push(format!("Resistance {inspiratory} in, {expiratory} out{trapping}"));
+    lines.push(resistance(baseline, face));
     if let Some(ratio) = baseline.ventilatory_ratio {
         lines.push(format!("Ventilatory ratio {} (about 1 in health)", face.value(ratio, Dimension::Number)));
     }
@@ -174,4 +164,28 @@ pub fn origins(baseline: &BaselineReport, face: Face) -> Vec<String> {
         ));
     }
     lines
+}
+
+/// "25 mL/cmH2O", or "unknown" without a unit after it.
+fn with_unit(value: Option<f64>, dimension: Dimension, unit: &str, face: Face) -> String {
+    value.map_or_else(|| "unknown".to_owned(), |value| format!("{} {unit}", face.value(value, dimension)))
+}
+
+/// "Resistance 13 cmH2O·s/L in, 26 out (trapping measured)"
+fn resistance(baseline: &BaselineReport, face: Face) -> String {
+    let [inspiratory, expiratory] =
+        [baseline.inspiratory_resistance_cmh2o_s_l, baseline.expiratory_resistance_cmh2o_s_l];
+    if inspiratory.is_none() && expiratory.is_none() {
+        return "Resistance unknown".to_owned();
+    }
+    let unit = if face.ascii { "cmH2O.s/L" } else { "cmH2O·s/L" };
+    let inspiratory = with_unit(inspiratory, Dimension::Resistance, unit, face);
+    let expiratory = face.known(expiratory, Dimension::Resistance);
+    let trapping = match baseline.trapping_evidence {
+        TrappingEvidence::Measured => " (trapping measured)",
+        TrappingEvidence::Given => " (given)",
+        TrappingEvidence::Assumed => " (assumed equal)",
+        TrappingEvidence::Unknown => "",
+    };
+    format!("Resistance {inspiratory} in, {expiratory} out{trapping}")
 }

@@ -1,6 +1,6 @@
 //! A plan as plain text that fits 80 columns and reads at a glance.
 
-use super::columns::{Column, Moved, table};
+use super::columns::{Column, now_title, table};
 use super::face::{Face, ascii};
 use super::{SAFETY, course_line, patient_lines, reckoning_lines};
 use crate::case::record::Record;
@@ -10,6 +10,7 @@ use crate::planning::caution::Caution;
 use crate::planning::levers::Lever;
 use crate::planning::plan::{Plan, PlanLine};
 use crate::planning::reckoning::reckon;
+use crate::planning::target::Target;
 use crate::quantity::show::{joined, number};
 use crate::quantity::unit::Dimension;
 
@@ -31,7 +32,7 @@ pub fn of(plan: &Plan, record: &Record, face: Face) -> String {
     lines.push(String::new());
     lines.extend(table(&columns(plan), face));
     lines.push(String::new());
-    lines.extend(plan.plans.iter().map(|line| verdict(line, face)));
+    lines.extend(plan.plans.iter().map(|line| verdict(line, plan, face)));
     if let Some(summit) = plan.summit {
         lines.push(format!(
             "A faster rate clears more only up to {:.0}/min, where PaCO2 would be {}.",
@@ -70,7 +71,7 @@ pub(super) fn cautions(cautions: &[Caution], face: Face) -> Vec<String> {
         return Vec::new();
     }
     let mut lines = vec![String::new(), "Cautions".to_owned()];
-    lines.extend(cautions.iter().map(|caution| face.wrapped(&caution.text, "  ! ", "    ")));
+    lines.extend(cautions.iter().map(|caution| face.wrapped(caution.text_in(face.unit), "  ! ", "    ")));
     lines
 }
 
@@ -91,19 +92,28 @@ fn goal(plan: &Plan, record: &Record, face: Face) -> String {
             );
             face.wrapped(&goal, "", "  ")
         }
-        "ph" => format!("Goal pH {}, which is a PaCO2 of {paco2}.", face.known(target.ph, Dimension::Ph)),
-        _ => format!("Goal PaCO2 {paco2}{ph}."),
+        "ph" => {
+            let ph = face.known(target.ph, Dimension::Ph);
+            format!("Goal pH {ph}, which is a PaCO2 of {paco2}; {}", counts_as_on_it(target, face))
+        }
+        _ => format!("Goal PaCO2 {paco2}{ph}; {}", counts_as_on_it(target, face)),
     }
+}
+
+/// "48–52 mmHg counts as on it."
+fn counts_as_on_it(target: &Target, face: Face) -> String {
+    let [low, high] = target.band_mmhg;
+    format!("{} {} counts as on it.", face.gas_range(Some(low), Some(high)), face.unit.word())
 }
 
 fn columns(plan: &Plan) -> Vec<Column<'_>> {
     let trapping_assumed = plan.baseline.trapping_evidence == TrappingEvidence::Assumed;
-    let output_estimated = plan.baseline.co2_evidence == Co2Evidence::Estimated;
+    let output_estimated =
+        plan.baseline.co2_evidence == Co2Evidence::Estimated && plan.baseline.co2_production_ml_min.is_some();
     let now = Column {
-        title: plan.now.paco2_is.replace("measured", "now").replace("forecast", "now (fcst)"),
+        title: now_title(&plan.now),
         settings: &plan.now.settings,
         outcome: &plan.now.outcome,
-        moved: Moved::Nothing,
         trapping_assumed,
         output_estimated,
     };
@@ -111,11 +121,6 @@ fn columns(plan: &Plan) -> Vec<Column<'_>> {
         title: name_of(line.aim).to_owned(),
         settings: &line.settings,
         outcome: &line.forecast,
-        moved: match line.aim {
-            "rate" => Moved::Rate,
-            "volume" => Moved::Volume,
-            _ => Moved::Both,
-        },
         trapping_assumed,
         output_estimated,
     });
@@ -131,7 +136,7 @@ const fn name_of(aim: &str) -> &'static str {
 }
 
 /// One sentence on a plan: on the goal or not, what it breaks, what blocks.
-fn verdict(line: &PlanLine, face: Face) -> String {
+fn verdict(line: &PlanLine, plan: &Plan, face: Face) -> String {
     let limits = match line.within_limits {
         Some(true) => "every limit kept".to_owned(),
         Some(false) => {
@@ -143,33 +148,40 @@ fn verdict(line: &PlanLine, face: Face) -> String {
         None => {
             let unknown = line.forecast.limits.iter().filter(|limit| limit.verdict.word() == "unknown");
             let names: Vec<&str> = unknown.map(|limit| limit.id.words()).collect();
-            format!("none known to be beyond, but unknown: {}", names.join(", "))
+            format!("no limit known to be beyond, but unknown: {}", names.join(", "))
         }
     };
-    // "On the goal" alone would read as a promise.
-    let chance = line.forecast.interval.chance_on_target;
-    let chance = chance.map_or_else(String::new, |chance| format!(" (chance {:.0} %)", chance * 100.0));
-    let goal = if line.on_target {
-        format!("forecast on the goal{chance}")
-    } else {
-        "NOT on the goal, the nearest that can be dialled".to_owned()
+    let goal = match (line.on_target, line.aim) {
+        (true, _) if plan.target.met_by(line.forecast.state.paco2_mmhg) => "forecast on the goal",
+        (true, _) => "as near the goal as the dial allows",
+        (false, "gentle") => "NOT on the goal, the nearest that goes no further beyond a limit than now",
+        (false, _) => "NOT on the goal, the nearest that can be dialled",
     };
-    let exact = line.exact.map_or_else(String::new, |exact| exactly(line, exact));
-    let blocked = if line.blocked_by.is_empty() {
+    let chance = line.forecast.interval.chance_on_target;
+    let chance = chance.map_or_else(String::new, |chance| format!(", chance {:.0} %", chance * 100.0));
+    let blocked = if !line.on_target && line.exact.is_none() && line.aim != "gentle" {
+        // Not a limit: past the summit, below the patient's own rate, or no time to breathe out.
+        format!(" No {} reaches it.", if line.aim == "rate" { "set rate" } else { "set volume or pressure" })
+    } else if line.blocked_by.is_empty() {
         String::new()
     } else {
         let names: Vec<&str> = line.blocked_by.iter().map(|id| id.words()).collect();
         format!(" Blocked by {}.", names.join(", "))
     };
-    face.wrapped(&format!("{}{exact}: {goal}; {limits}.{blocked}", capital(name_of(line.aim))), "", "  ")
+    face.wrapped(
+        &format!("{}{}: {goal}{chance}; {limits}.{blocked}", capital(name_of(line.aim)), exact(line, plan)),
+        "",
+        "  ",
+    )
 }
 
-/// The unrounded answer beside what is dialled. Past the summit in pressure control the same PaCO2 has two rates, and the
-/// nearest settable one may be the faster.
-fn exactly(line: &PlanLine, exact: f64) -> String {
+/// "(exactly 26.2)". Past the summit two rates give one PaCO2, and the exact one is the slower of them.
+fn exact(line: &PlanLine, plan: &Plan) -> String {
+    let Some(exact) = line.exact else { return String::new() };
     let shown = number(exact, usize::from(exact < 100.0));
-    if line.aim == "rate" && (exact - line.settings.rate_per_min).abs() > 1.0 {
-        return format!(" (the same PaCO2 at {shown}/min)");
+    let summit = plan.summit.map(|summit| summit.rate_per_min);
+    if line.aim == "rate" && summit.is_some_and(|summit| line.settings.rate_per_min > summit) {
+        return format!(" (a rate of {shown} reaches it too, with a longer expiration)");
     }
     format!(" (exactly {shown})")
 }
@@ -206,10 +218,9 @@ fn lever(lever: &Lever, face: Face) -> String {
         (text != "0").then(|| format!("{name} {text}"))
     };
     let buys = [
-        Some(match signed(tenth, digits).as_str() {
-            "0" => format!("  {step:<30} PaCO2 unchanged"),
-            change => format!("  {step:<30} PaCO2 {change}"),
-        }),
+        told("PaCO2", Some(tenth), digits)
+            .map_or_else(|| Some("PaCO2 unchanged".to_owned()), Some)
+            .map(|buys| format!("  {step:<30} {buys}")),
         told("pH", lever.ph_change, 2),
         told("driving", lever.driving_pressure_change_cmh2o, 1),
         told("power", lever.mechanical_power_change_j_min, 1),

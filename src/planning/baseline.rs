@@ -174,14 +174,13 @@ impl Blood {
         if let (Some(ph), Some(typed)) = (gas.ph, gas.bicarbonate_mmol_l) {
             let computed = acid_base::bicarbonate(ph, drawn.paco2_mmhg);
             if (computed - typed).abs() > 2.0 {
-                cautions.say(
-                    "gas_disagrees",
+                cautions.say_gas("gas_disagrees", |gas| {
                     format!(
-                        "The gas does not agree with itself: pH {ph:.2} and PaCO2 {:.0} mmHg give a bicarbonate of \
-                         {computed:.1} mmol/L, charted is {typed:.1}. Check the typed values against the report.",
-                        drawn.paco2_mmhg
-                    ),
-                );
+                        "The gas does not agree with itself: pH {ph:.2} and PaCO2 {} give a bicarbonate of {computed:.1} \
+                         mmol/L, charted is {typed:.1}. Check the typed values against the report.",
+                        gas(drawn.paco2_mmhg)
+                    )
+                });
             }
         }
         let ph = gas.ph.or_else(|| {
@@ -313,6 +312,7 @@ fn same_ventilation(mechanics: &Mechanics, one: &InForce, other: &InForce) -> bo
 /// The gases under mandatory ventilation, in the order they were drawn, ending with the latest.
 fn heard_gases(occasions: &[Occasion], mechanics: &Mechanics, latest: &GasBreath) -> Vec<HeardGas> {
     let gases = gases_by_time(occasions);
+    let carriers = carriers(occasions, mechanics);
     let first = gases.first().and_then(|(_, occasion, _)| occasion.drawn_at());
     let mut heard: Vec<HeardGas> = gases
         .iter()
@@ -326,7 +326,7 @@ fn heard_gases(occasions: &[Occasion], mechanics: &Mechanics, latest: &GasBreath
                 rate_per_min,
                 tidal_volume_ml,
                 apparatus_ml: settings.apparatus_dead_space_ml,
-                minutes_since_change: minutes_since_change(occasions, mechanics, index),
+                minutes_since_change: minutes_since_change(occasions, &carriers, index),
             })
         })
         .collect();
@@ -337,17 +337,27 @@ fn heard_gases(occasions: &[Occasion], mechanics: &Mechanics, latest: &GasBreath
     heard
 }
 
-/// Minutes from the entry that first carries the ventilation of occasion `index` to its gas.
-fn minutes_since_change(occasions: &[Occasion], mechanics: &Mechanics, index: usize) -> Option<f64> {
-    let gas = occasions.get(index)?;
-    let mut carrier: Option<crate::case::moment::Moment> = None;
-    for occasion in occasions.get(..index)?.iter().rev() {
-        if !same_ventilation(mechanics, &occasion.in_force, &gas.in_force) {
-            let drawn_at = gas.drawn_at()?;
-            // The change stands in the entry after this one; in the gas's own entry it counts as settled.
-            return carrier.map(|changed| drawn_at.minutes_since(changed).max(0.0));
-        }
-        carrier = occasion.at;
+/// For each occasion, the one from which its ventilation has been in force without a break.
+fn carriers(occasions: &[Occasion], mechanics: &Mechanics) -> Vec<usize> {
+    let mut carriers: Vec<usize> = Vec::with_capacity(occasions.len());
+    let mut before: Option<(usize, &InForce)> = None;
+    for (index, occasion) in occasions.iter().enumerate() {
+        let carrier = before
+            .filter(|(_, in_force)| same_ventilation(mechanics, in_force, &occasion.in_force))
+            .map_or(index, |(carrier, _)| carrier);
+        carriers.push(carrier);
+        before = Some((carrier, &occasion.in_force));
     }
-    None
+    carriers
+}
+
+/// Minutes from the entry that first carries the ventilation of occasion `index` to its gas; `None` when that is the
+/// first of all, or the gas's own entry, where the change counts as settled.
+fn minutes_since_change(occasions: &[Occasion], carriers: &[usize], index: usize) -> Option<f64> {
+    let carrier = *carriers.get(index)?;
+    if carrier == 0 || carrier == index {
+        return None;
+    }
+    let changed = occasions.get(carrier)?.at?;
+    Some(occasions.get(index)?.drawn_at()?.minutes_since(changed).max(0.0))
 }

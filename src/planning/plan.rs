@@ -175,7 +175,7 @@ pub fn plan(record: &Record, request: &Request) -> Result<Plan, Vec<Fault>> {
     let summit = summit_of(&forecaster, &base);
     let course = plans.first().and_then(|first| forecaster.course(&first.dialled));
     remarks::of_patient(&forecaster, record, &now, &mut cautions);
-    remarks::of_held(request.held, &mut cautions);
+    remarks::of_choices(request.held, record.steadiness(), &mut cautions);
     remarks::of_trial(&forecaster, &base, &mut cautions);
     if let Some(first) = plans.first() {
         remarks::of_course(&forecaster, course.as_ref(), &mut cautions);
@@ -214,7 +214,7 @@ pub fn forecast(record: &Record, trial: &Trial, held: Held) -> Result<Forecast, 
     let readings = forecaster.held_readings(&dialled);
     let mut cautions = baseline.cautions.clone();
     remarks::of_patient(&forecaster, record, &now, &mut cautions);
-    remarks::of_held(held, &mut cautions);
+    remarks::of_choices(held, record.steadiness(), &mut cautions);
     remarks::of_trial(&forecaster, &dialled, &mut cautions);
     remarks::of_course(&forecaster, course.as_ref(), &mut cautions);
     remarks::of_expectation(&outcome, &mut cautions);

@@ -13,8 +13,9 @@ use super::solve::Summit;
 use super::state::State;
 use super::target::Target;
 use crate::case::entry::{Control, FlowPattern, Measured};
-use crate::case::record::Record;
+use crate::case::record::{Record, Steadiness};
 use crate::case::settings::Inflation;
+use crate::quantity::show::PACO2_TOLD_UP_TO_MMHG;
 
 /// Readings of dead space further apart than this, mmHg, are shown: engine contract, about the noise of a gas.
 pub const READINGS_APART_MMHG: f64 = 3.0;
@@ -59,27 +60,25 @@ fn of_dead_space(forecaster: &Forecaster<'_>, cautions: &mut Cautions) {
             ),
         );
     }
-    if baseline.exchange.co2_evidence == Co2Evidence::Estimated {
-        let what = if baseline.exchange.co2_output_ml_min.is_some() {
-            "CO2 output is estimated, so useful and wasted ventilation are estimates too"
-        } else {
-            "CO2 output is unknown, so useful and wasted ventilation are unknown too"
-        };
+    if forecaster.co2_output_ml_min().is_none() {
+        cautions.say(
+            "co2_output_unknown",
+            "CO2 output, useful and wasted ventilation are unknown; the forecast PaCO2 does not hang on them. Give sex and \
+             height, or end-tidal CO2, CO2 production or VD/VT.",
+        );
+    } else if baseline.exchange.co2_evidence == Co2Evidence::Estimated {
         cautions.say(
             "co2_output_estimated",
-            format!(
-                "{what}; the forecast PaCO2 does not hang on it. End-tidal CO2, CO2 production or VD/VT would fix it."
-            ),
+            "CO2 output is estimated, so useful and wasted ventilation are estimates too; the forecast PaCO2 does not hang \
+             on it. End-tidal CO2, CO2 production or VD/VT would fix it.",
         );
     }
     if baseline.exchange.series_evidence == SeriesEvidence::Rule {
-        let rule =
-            if baseline.predicted_weight_kg.is_some() { "from predicted weight" } else { "as for any adult" };
         cautions.say(
             "airway_dead_space_by_rule",
             format!(
-                "Airway dead space ({:.0} mL) is assumed {rule}, a weak rule that matters when the tidal volume changes. \
-                 VD/VT together with end-tidal CO2 would measure it.",
+                "Airway dead space ({:.0} mL) is assumed by a weak rule, which matters when the tidal volume changes. VD/VT \
+                 together with end-tidal CO2 would measure it.",
                 baseline.airway_by_rule_ml
             ),
         );
@@ -103,14 +102,16 @@ fn of_breathing(forecaster: &Forecaster<'_>, cautions: &mut Cautions) {
     if !(low..=high).contains(&per_set) {
         let (expected, look) = match baseline.now.control() {
             Control::Pressure => {
-                ("of what compliance and resistance would give", "at those values again, and for a leak")
+                ("of what compliance and resistance would give", "Check those values and look for a leak")
             }
-            Control::Volume | Control::Support => ("of the set volume", "for a leak and the flow sensor"),
+            Control::Volume | Control::Support => {
+                ("of the set volume", "Look for a leak and check the flow sensor")
+            }
         };
         cautions.say(
             "volume_differs",
             format!(
-                "The exhaled tidal volume is {:.0} % {expected}, and that is held for new settings. Look {look}.",
+                "The exhaled tidal volume is {:.0} % {expected}, and that is held for new settings. {look}.",
                 per_set * 100.0
             ),
         );
@@ -214,22 +215,6 @@ fn of_readings_at_bedside(record: &Record, now: &State, cautions: &mut Cautions)
     }
 }
 
-/// Another way of holding dead space than the usual one, which every number then rests on.
-pub fn of_held(held: Held, cautions: &mut Cautions) {
-    let how = match held {
-        Held::Split => return,
-        Held::Volume => "all of the dead space stays a volume",
-        Held::Fraction => "all of the dead space stays a fraction of the breath",
-    };
-    cautions.say(
-        "held_as_asked",
-        format!(
-            "As asked, every forecast takes it that {how} when settings change; by default only the airway stays a \
-             volume. Compare with --held split."
-        ),
-    );
-}
-
 /// What holds for the settings under trial.
 pub fn of_trial(forecaster: &Forecaster<'_>, dialled: &Dialled, cautions: &mut Cautions) {
     let factor = dialled.co2_factor;
@@ -250,6 +235,31 @@ pub fn of_trial(forecaster: &Forecaster<'_>, dialled: &Dialled, cautions: &mut C
     }
 }
 
+/// A reading of dead space, or of the patient, that the user chose: what was chosen stands beside the numbers.
+pub fn of_choices(held: Held, steadiness: Steadiness, cautions: &mut Cautions) {
+    let held = match held {
+        Held::Split => None,
+        Held::Volume => Some(("held_volume", "volume")),
+        Held::Fraction => Some(("held_fraction", "fraction of the breath")),
+    };
+    if let Some((id, what)) = held {
+        cautions.say(
+            id,
+            format!(
+                "As asked, all dead space is held as a {what}; the usual reading holds the airway as a volume and the \
+                 alveolar part as a fraction. Look at the other readings before acting."
+            ),
+        );
+    }
+    if steadiness == Steadiness::Settled {
+        cautions.say(
+            "taken_as_settled",
+            "As stated, the patient is taken as settled, stable and untouched within the hour, which makes the intervals \
+             narrow. If that no longer holds, use steadiness usual.",
+        );
+    }
+}
+
 /// What holds for the course.
 pub fn of_course(forecaster: &Forecaster<'_>, course: Option<&Course>, cautions: &mut Cautions) {
     let Some(course) = course else {
@@ -266,7 +276,7 @@ pub fn of_course(forecaster: &Forecaster<'_>, course: Option<&Course>, cautions:
             format!(
                 "PaCO2 will still be moving after an hour (settled at about {:.0} min): a gas at 60 min shows the way, not \
                  the end. Repeat it.",
-                course.settled_minutes
+                course.settled_minutes.ceil()
             ),
         );
     }
@@ -283,14 +293,17 @@ pub fn of_expectation(outcome: &Outcome, cautions: &mut Cautions) {
     let arithmetic = outcome.state.paco2_mmhg;
     if let Some(expected) = outcome.interval.paco2_expected_mmhg
         && (expected - arithmetic).abs() > EXPECTATION_APART_MMHG
+        && expected.min(arithmetic) <= PACO2_TOLD_UP_TO_MMHG
     {
-        cautions.say(
-            "earlier_gases_differ",
+        // With one gas too: where little room is left beside the dead space, its doubt moves the middle.
+        cautions.say_gas("earlier_gases_differ", |gas| {
             format!(
-                "Arithmetic from the latest gas gives {arithmetic:.0} mmHg, with the earlier gases {expected:.0}: they \
-                 point elsewhere. Repeat the gas before a large change."
-            ),
-        );
+                "Arithmetic from the latest gas gives {}, but with every gas and the doubt about dead space heard the middle \
+                 is {}. Repeat the gas before a large change.",
+                gas(arithmetic),
+                gas(expected)
+            )
+        });
     }
 }
 
@@ -299,21 +312,22 @@ pub fn of_readings(what: &str, readings: &HeldReadings, cautions: &mut Cautions)
     let (Some(split), Some(fraction)) = (readings.split, readings.fraction) else { return };
     let apart = readings.volume.is_none() || readings.spread_mmhg() > READINGS_APART_MMHG;
     if apart {
-        let volume = readings.volume.map_or("no breath past it".to_owned(), |mmhg| format!("{mmhg:.0} mmHg"));
-        let (id, plan) = match what {
-            "rate" => ("dead_space_readings_rate", "the plan by rate"),
-            "volume" => ("dead_space_readings_volume", "the plan by volume"),
-            "gentle" => ("dead_space_readings_gentle", "the gentlest plan"),
-            _ => ("dead_space_readings", "these settings"),
+        let (id, name) = match what {
+            "rate" => ("dead_space_readings_rate", "By rate"),
+            "volume" => ("dead_space_readings_volume", "By volume"),
+            "gentle" => ("dead_space_readings_gentle", "By the gentlest pair"),
+            _ => ("dead_space_readings", "With these settings"),
         };
-        cautions.say(
-            id,
+        cautions.say_gas(id, |gas| {
+            let volume = readings.volume.map_or("no useful breath".to_owned(), gas);
             format!(
-                "For {plan} the forecast hangs on how dead space behaves: {split:.0} mmHg if the airway stays a volume and \
-                 the rest a fraction, {volume} if all of it stays a volume, {fraction:.0} mmHg if all of it stays a \
-                 fraction. Change in smaller steps and repeat the gas."
-            ),
-        );
+                "{name} PaCO2 hangs on how dead space behaves: {} if the airway stays a volume and the alveolar part a \
+                 fraction, {volume} if all of it stays a volume, {} if all stays a fraction. Change in smaller steps and \
+                 repeat the gas.",
+                gas(split),
+                gas(fraction)
+            )
+        });
     }
 }
 
@@ -321,14 +335,14 @@ pub fn of_readings(what: &str, readings: &HeldReadings, cautions: &mut Cautions)
 pub fn of_summit(summit: Option<Summit>, target: &Target, now: &Now, cautions: &mut Cautions) {
     let Some(summit) = summit else { return };
     if target.paco2_mmhg < summit.paco2_mmhg {
-        cautions.say(
-            "beyond_summit",
+        cautions.say_gas("beyond_summit", |gas| {
             format!(
-                "No rate reaches the target: alveolar ventilation is highest at a rate of {:.0}/min, with a PaCO2 of {:.0} \
-                 mmHg. Raise inspiratory pressure, lengthen expiration or lower resistance.",
-                summit.rate_per_min, summit.paco2_mmhg
-            ),
-        );
+                "No rate reaches the goal: alveolar ventilation is highest at a rate of {:.0}/min, with a PaCO2 of {}. \
+                 Raise inspiratory pressure, lengthen expiration or lower resistance.",
+                summit.rate_per_min,
+                gas(summit.paco2_mmhg)
+            )
+        });
     } else if now.outcome.state.rate_per_min > summit.rate_per_min {
         cautions.say(
             "past_summit",

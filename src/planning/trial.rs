@@ -5,6 +5,7 @@ use crate::case::fault::{Fault, Place};
 use crate::case::settings::{Inflation, Settings, Timing};
 use crate::physiology::breath::pressure_control::filling;
 use crate::physiology::breath::{Lung, Phases};
+use crate::quantity::show::number;
 
 pub use super::dialled::Dialled;
 use super::forecast::Forecaster;
@@ -95,8 +96,8 @@ impl Trial {
             return Err(Fault::new(
                 [flag("rate")],
                 format!(
-                    "at a total rate of {rate:.0}/min an inspiratory time of {:.2} s leaves no time to breathe out",
-                    settings.inspiratory_time_s()
+                    "at a total rate of {rate:.0}/min an inspiratory time of {} s leaves no time to breathe out",
+                    number(settings.inspiratory_time_s(), 2)
                 ),
                 "Lower the rate or shorten inspiration, for example with --inspiratory-time 0.8.",
             ));

@@ -124,6 +124,20 @@ pub fn with_unit(value: f64, dimension: Dimension, unit: PressureUnit) -> String
     joined(&shown, word)
 }
 
+/// Above this a PaCO2 is not told apart, mmHg: no patient is let come near it. Common practice.
+pub const PACO2_TOLD_UP_TO_MMHG: f64 = 200.0;
+
+/// A PaCO2 without its unit; one that no patient reaches is only said to be over 200 mmHg.
+pub fn paco2(mmhg: f64, unit: PressureUnit) -> String {
+    let told = |mmhg| show(mmhg, Dimension::GasPressure, unit);
+    if mmhg > PACO2_TOLD_UP_TO_MMHG { format!("over {}", told(PACO2_TOLD_UP_TO_MMHG)) } else { told(mmhg) }
+}
+
+/// A PaCO2 with its unit.
+pub fn paco2_with_unit(mmhg: f64, unit: PressureUnit) -> String {
+    joined(&paco2(mmhg, unit), unit.word())
+}
+
 /// A number and its unit as people write them together: "63 mmHg", "22/min", "0.6".
 pub fn joined(shown: &str, word: &str) -> String {
     match (word, word.strip_prefix("1/")) {

@@ -57,7 +57,9 @@ pub enum AppendError {
     )]
     Locked(PathBuf),
     /// No room is left.
-    #[error("the disk is full: nothing was written to {0}; make room, then chart again")]
+    #[error(
+        "there is no room for {0} (the disk is full, or files may not grow so large): nothing was written; make room, then chart again"
+    )]
     DiskFull(PathBuf),
     /// The system refused.
     #[error("{path} cannot be written: {error}; look at the file before you chart again")]

@@ -205,15 +205,14 @@ impl Reading {
         let useful = (self.tidal - whole).times_rate(self.rate);
         let reproduced = pressure(StpdFlow::from_ml_per_min(production), useful, self.temperature);
         if (reproduced / self.arterial - 1.0).abs() > 0.15 {
-            cautions.say(
-                "co2_evidence_differs",
+            cautions.say_gas("co2_evidence_differs", |gas| {
                 format!(
-                    "CO2 production of {production:.0} mL/min and VD/VT of {:.2} together would give a PaCO2 of {:.0} \
-                     mmHg, not the measured one: VD/VT is used. Check both.",
+                    "CO2 production of {production:.0} mL/min and VD/VT of {:.2} together would give a PaCO2 of {}, not \
+                     the measured one: VD/VT is used. Check both.",
                     whole / self.tidal,
-                    reproduced / self.arterial * self.paco2_at_37()
-                ),
-            );
+                    gas(reproduced / self.arterial * self.paco2_at_37())
+                )
+            });
         }
     }
 
@@ -264,13 +263,14 @@ impl Reading {
             ));
         }
         if fraction < 0.0 {
-            cautions.say(
-                "end_tidal_above_arterial",
+            cautions.say_gas("end_tidal_above_arterial", |gas| {
                 format!(
-                    "End-tidal PCO2 ({mmhg:.0} mmHg) is above arterial ({arterial:.0} mmHg at body temperature): no \
-                     alveolar dead space is taken. Check the capnometer and the time of the gas."
-                ),
-            );
+                    "End-tidal PCO2 ({}) is above arterial ({} at body temperature): no alveolar dead space is taken. \
+                     Check the capnometer and the time of the gas.",
+                    gas(mmhg),
+                    gas(arterial)
+                )
+            });
         }
         Ok(Some(fraction.max(0.0)))
     }
