@@ -8,6 +8,8 @@ pub mod checked;
 mod clock;
 pub mod complaint;
 mod note;
+#[cfg(feature = "panel")]
+mod panel;
 mod review;
 mod source;
 mod trial;
@@ -106,9 +108,18 @@ fn dispatch(matches: &ArgMatches) -> Said {
         Some(("cases", matches)) => answer::cases(matches, colour),
         Some(("completions", matches)) => Ok(answer::completions(matches)),
         Some(("manual", _)) => answer::manual(),
-        _ => answer::plan_of(matches, colour),
+        _ => opened(matches, colour),
     };
     said.unwrap_or_else(|complaint| complaint)
+}
+
+/// `tidewright` alone or with a case: the panel, or the plan where there is no terminal to open it on.
+fn opened(matches: &ArgMatches, colour: Colours) -> Result<Said, Said> {
+    #[cfg(feature = "panel")]
+    if panel::can_open(matches) {
+        return panel::open(matches, colour);
+    }
+    answer::plan_of(matches, colour)
 }
 
 /// Whether output and errors are coloured.

@@ -4,7 +4,7 @@
 //!
 //! | layer | what it holds |
 //! | --- | --- |
-//! | [`cli`] | the command line |
+//! | [`cli`], [`panel`] | the command line; the terminal panel |
 //! | [`note`] | faces on paper: text, JSON |
 //! | [`planning`] | baseline, forecast, limits, plan, levers, belief, course: what a clinician asks |
 //! | [`case`] | the patient's record: types, TOML in, profiles |
@@ -19,6 +19,8 @@
 pub mod case;
 pub mod cli;
 pub mod note;
+#[cfg(feature = "panel")]
+pub mod panel;
 pub mod physiology;
 pub mod planning;
 pub mod quantity;

@@ -222,6 +222,12 @@ pub fn command() -> Command {
         .args_conflicts_with_subcommands(true)
         .subcommand_negates_reqs(true)
         .arg(case_argument().help("A case file or the name of a built-in case [default: the demonstration case]"))
+        .arg(
+            Arg::new("no_mouse")
+                .long("no-mouse")
+                .action(ArgAction::SetTrue)
+                .help("Leave the mouse to the terminal while the panel is open"),
+        )
         .args(everywhere.map(|arg| arg.global(true)))
         .subcommand(plan_command())
         .subcommand(forecast_command())

@@ -103,15 +103,28 @@ pub fn named(
     steadiness: Option<Steadiness>,
     colour: bool,
 ) -> Result<Opened, Said> {
-    let bytes = bytes(name)?;
-    let shown = read::as_shown(&bytes).into_owned();
+    read_as(name, &bytes(name)?, profile, steadiness, colour)
+}
+
+/// Reads the bytes of a case that was named `name`.
+///
+/// # Errors
+/// What is wrong with it, ready to be said.
+pub fn read_as(
+    name: &str,
+    bytes: &[u8],
+    profile: Option<&str>,
+    steadiness: Option<Steadiness>,
+    colour: bool,
+) -> Result<Opened, Said> {
+    let shown = read::as_shown(bytes).into_owned();
     let path = if name == "-" { "standard input" } else { name };
     let complain = |problems: Vec<Problem>| {
         Said::complaint(complaint::draw(&problems, Some((path, &shown)), colour), Status::BadInput)
     };
     let folder = (name != "-").then(|| Path::new(name));
     let read::Typed { mut draft, spans } =
-        read::draft(&bytes, &|profile| file::profile(profile, folder)).map_err(complain)?;
+        read::draft(bytes, &|profile| file::profile(profile, folder)).map_err(complain)?;
     if let Some(profile) = profile {
         draft.profile = chosen_profile(profile)?;
     }

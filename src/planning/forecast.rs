@@ -318,7 +318,7 @@ impl<'a> Forecaster<'a> {
     }
 
     /// The way from PaCO2 now to `final_mmhg`; `None` without predicted weight or CO2 output.
-    fn curve(&self, dialled: &Dialled, final_mmhg: f64) -> Option<stores::Course> {
+    pub fn curve(&self, dialled: &Dialled, final_mmhg: f64) -> Option<stores::Course> {
         let weight = self.baseline.predicted_weight_kg?;
         let output = self.co2_output_ml_min? * dialled.co2_factor;
         Some(stores::Course::new(weight, output, self.now_paco2_mmhg, final_mmhg))
