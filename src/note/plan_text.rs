@@ -42,7 +42,7 @@ pub fn of(plan: &Plan, record: &Record, face: Face) -> String {
     }
     if let (Some(course), Some(first)) = (&plan.course, plan.plans.first()) {
         lines.push(String::new());
-        lines.push(format!("The next hour {}", name_of(first.aim)));
+        lines.push(format!("The next hour, {}", name_of(first.aim)));
         lines.push(format!("  {}", course_line::drawing(course, face)));
         lines.extend(course_line::words(course, face).into_iter().map(|line| format!("  {line}")));
     }
@@ -142,7 +142,8 @@ fn verdict(line: &PlanLine, plan: &Plan, face: Face) -> String {
         Some(false) => {
             let beyond = line.forecast.limits.iter().filter(|limit| limit.verdict.word() == "beyond");
             let names: Vec<&str> = beyond.map(|limit| limit.id.words()).collect();
-            format!("BEYOND its limit: {}", names.join(", "))
+            let limits = if names.len() > 1 { "its limits" } else { "its limit" };
+            format!("BEYOND {limits}: {}", names.join(", "))
         }
         None => {
             let unknown = line.forecast.limits.iter().filter(|limit| limit.verdict.word() == "unknown");

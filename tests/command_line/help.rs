@@ -2,8 +2,8 @@
 
 use crate::program::{fits, matches, run, shown};
 
-const COMMANDS: [&str; 9] =
-    ["plan", "forecast", "chart", "review", "check", "profiles", "cases", "completions", "manual"];
+const COMMANDS: [&str; 10] =
+    ["plan", "forecast", "chart", "note", "review", "check", "profiles", "cases", "completions", "manual"];
 
 #[test]
 fn help_of_every_command() {

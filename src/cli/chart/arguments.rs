@@ -68,7 +68,7 @@ pub fn command() -> Command {
              several [[entry]].\nThe record is checked as a whole before a byte is written; earlier bytes are never changed.\n\n\
              Examples:\n  tidewright chart bed3.toml --rate 28 --by RT\n  tidewright chart bed3.toml --paco2 52 --ph 7.31 --drawn-at 08:40\n  \
              tidewright chart bed3.toml --plan rate --to-paco2 50\n  tidewright chart bed3.toml --amends 4 --paco2 49 --text \"59 was typed for 49\"\n  \
-             tidewright chart bed3.toml --trial-started 09:00 --trial-support 5 --trial-outcome running\n  \
+             tidewright chart bed3.toml --trial-started 09:00 --trial-outcome running\n  \
              tidewright chart bed3.toml --observation minute=10,rate=24,spo2=0.95\n  tidewright chart bed3.toml < entries.toml\n\n{SAFETY}"
         ))
 }
