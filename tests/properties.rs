@@ -1,6 +1,9 @@
 //! What must hold for every accepted input: random cases drawn from the table of inputs.
 
 #![allow(
+    clippy::cast_possible_truncation,
+    clippy::cast_sign_loss,
+    clippy::format_push_string,
     clippy::unwrap_used,
     clippy::panic,
     clippy::indexing_slicing,

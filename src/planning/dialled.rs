@@ -12,6 +12,8 @@ pub struct Dialled {
     pub lung: Option<Lung>,
     /// Measured over modelled volume in pressure control.
     pub pressure_scale: Option<f64>,
+    /// True where trapping rests on an expiratory resistance that is only assumed.
+    pub trapping_assumed: bool,
     /// CO2 output over the present one.
     pub co2_factor: f64,
 }

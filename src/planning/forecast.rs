@@ -142,6 +142,7 @@ impl<'a> Forecaster<'a> {
             settings: self.baseline.now,
             lung: self.baseline.mechanics.lung(),
             pressure_scale: self.baseline.mechanics.pressure_scale,
+            trapping_assumed: self.trapping_assumed(),
             co2_factor: 1.0,
         }
     }
@@ -377,7 +378,7 @@ impl<'a> Forecaster<'a> {
     pub fn outcome(&self, dialled: &Dialled, band_mmhg: Option<[f64; 2]>) -> Option<Outcome> {
         let state = self.state(dialled)?;
         let interval = self.interval(dialled, band_mmhg).unwrap_or_default();
-        Some(self.judge(&state, interval))
+        Some(self.judge(&state, interval, dialled.trapping_assumed))
     }
 
     /// The outcome now: measured, without an interval, or forecast, with one.
@@ -387,7 +388,7 @@ impl<'a> Forecaster<'a> {
         } else {
             self.interval(&self.now(), band_mmhg).unwrap_or_default()
         };
-        Some(self.judge(&self.state_now()?, interval))
+        Some(self.judge(&self.state_now()?, interval, self.trapping_assumed()))
     }
 
     /// True where trapping rests on an assumed resistance.
@@ -395,8 +396,8 @@ impl<'a> Forecaster<'a> {
         self.baseline.mechanics.trapping_evidence() == super::baseline::mechanics::TrappingEvidence::Assumed
     }
 
-    fn judge(&self, state: &State, interval: Interval) -> Outcome {
-        let limits = limits::verdicts(&self.baseline.profile.limits, state, self.trapping_assumed());
+    fn judge(&self, state: &State, interval: Interval, trapping_assumed: bool) -> Outcome {
+        let limits = limits::verdicts(&self.baseline.profile.limits, state, trapping_assumed);
         Outcome { state: *state, interval, limits }
     }
 

@@ -187,6 +187,11 @@ impl Mechanics {
         }
     }
 
+    /// Whether an expiratory resistance was given or measured, rather than assumed.
+    pub const fn expiratory_known(&self) -> bool {
+        self.expiratory_resistance.is_some()
+    }
+
     /// Where trapping comes from.
     pub fn trapping_evidence(&self) -> TrappingEvidence {
         match (self.compliance, self.expiratory()) {
