@@ -133,8 +133,8 @@ impl Trial {
             inspiratory_resistance: self.resistance_cmh2o_s_l.or(mechanics.inspiratory_resistance()),
             expiratory_resistance: mechanics.expiratory_if_resistance(self.resistance_cmh2o_s_l),
         });
-        dialled.trapping_assumed =
-            dialled.lung.is_some_and(|lung| lung.expiratory_resistance.is_some()) && !mechanics.expiratory_known();
+        dialled.trapping_assumed = dialled.lung.is_some_and(|lung| lung.expiratory_resistance.is_some())
+            && !mechanics.expiratory_known();
         if dialled.pressure_scale.is_none()
             && dialled.lung.is_some_and(|lung| lung.inspiratory_resistance.is_some())
         {
