@@ -3,7 +3,7 @@
 //! | part | what it holds |
 //! | --- | --- |
 //! | [`state`] | the record, what is turned, what is typed; no results |
-//! | [`line`], [`key`] | the one table of lines, the one table of keys |
+//! | [`mod@line`], [`key`] | the one table of lines, the one table of keys |
 //! | [`action`], [`update`] | what is asked for, and what that changes |
 //! | [`scene`] | what the state amounts to, computed anew each time |
 //! | [`view`] | the screen |
