@@ -211,6 +211,15 @@ fn settings_now(occasions: &[Occasion]) -> Result<(&Occasion, &Settings), Vec<Fa
             "under support every breath is the patient's own, so no forecast and no plan can be made",
             "Notes and weaning measures still work; for a plan chart the settings of volume or pressure control.",
         )]),
+        InForce::Missing("control") => Err(vec![Fault::new(
+            [
+                Place::in_entry(last.number, "settings", "rate"),
+                Place::in_entry(last.number, "settings", "tidal_volume"),
+            ],
+            "no ventilator settings are in force",
+            "Give at least rate and tidal_volume (volume control), or rate, inspiratory_pressure and peep (pressure \
+             control), for example: rate = 22, tidal_volume = 380, peep = 10.",
+        )]),
         InForce::Missing(key) => Err(vec![Fault::new(
             [Place::in_entry(last.number, "settings", key)],
             format!("the settings in force lack {}", key.replace('_', " ")),

@@ -325,6 +325,21 @@ impl<'a> Forecaster<'a> {
         Some(stores::Course::new(weight, output, self.now_paco2_mmhg, final_mmhg))
     }
 
+    /// How many minutes the change of ventilation before the latest gas needed to settle, from the gas before it; `None`
+    /// where there is none, or without predicted weight or CO2 output.
+    pub fn latest_gas_settles_after_min(&self) -> Option<f64> {
+        let [.., before, latest] = self.baseline.gases.as_slice() else { return None };
+        let airway = self.baseline.exchange.series_ml - self.baseline.gas.apparatus_ml;
+        let moved = |gas: &super::baseline::HeardGas| {
+            gas.rate_per_min * passing_ml(gas.tidal_volume_ml, gas.apparatus_ml + airway)
+        };
+        let settled_at = before.paco2_mmhg * moved(before) / moved(latest);
+        let output = self.baseline.exchange.co2_output_ml_min?;
+        let course =
+            stores::Course::new(self.baseline.predicted_weight_kg?, output, before.paco2_mmhg, settled_at);
+        Some(course.settled_minutes())
+    }
+
     /// The course of settings.
     pub fn course(&self, dialled: &Dialled) -> Option<Course> {
         let curve = self.curve(dialled, self.paco2_mmhg(dialled)?)?;

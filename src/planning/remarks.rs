@@ -30,6 +30,7 @@ const MINUTE_VOLUME_SHARE: f64 = 0.15;
 
 /// What holds for the patient whatever is dialled.
 pub fn of_patient(forecaster: &Forecaster<'_>, record: &Record, now: &Now, cautions: &mut Cautions) {
+    of_gas(forecaster, cautions);
     of_dead_space(forecaster, cautions);
     of_breathing(forecaster, cautions);
     of_lung(forecaster, cautions);
@@ -44,6 +45,57 @@ pub fn of_patient(forecaster: &Forecaster<'_>, record: &Record, now: &Now, cauti
             "entries_out_of_order",
             "Entries do not stand in the order of their times; they are read in the order of time. Check the clock, and \
              correct a wrong time with an amending entry.",
+        );
+    }
+}
+
+/// A bicarbonate outside this, mmol/L, is more often a slip than a patient: common practice.
+const BICARBONATE_MMOL_L: [f64; 2] = [5.0, 50.0];
+/// A PaCO2 below this, mmHg, would be plain in kPa, and is rare in mmHg: common practice.
+const PERHAPS_KPA_BELOW_MMHG: f64 = 20.0;
+/// A compliance above this, mL/cmH2O, is not a patient's: common practice.
+const LARGEST_COMPLIANCE: f64 = 150.0;
+/// Where the course is unknown, a gas sooner than this after a change, min, is taken as unsettled: common practice.
+const UNSETTLED_WITHIN_MIN: f64 = 30.0;
+
+/// A gas that may be a slip of the pen, or may not have settled.
+fn of_gas(forecaster: &Forecaster<'_>, cautions: &mut Cautions) {
+    let baseline = forecaster.baseline();
+    let paco2 = baseline.gas.paco2_mmhg;
+    if paco2 < PERHAPS_KPA_BELOW_MMHG {
+        cautions.say(
+            "paco2_perhaps_kilopascal",
+            format!(
+                "A PaCO2 of {paco2:.0} mmHg is rare. If the report is in kPa, write \"{paco2} kPa\"; every number here would \
+                 change. Check before anything is dialled."
+            ),
+        );
+    }
+    let [low, high] = BICARBONATE_MMOL_L;
+    if let Some(bicarbonate) = baseline.bicarbonate_mmol_l.filter(|value| !(low..=high).contains(value)) {
+        cautions.say(
+            "gas_implausible",
+            format!(
+                "pH and PaCO2 together give a bicarbonate of {bicarbonate:.0} mmol/L, which is hardly possible: check both \
+                 against the report, and their units, before anything is dialled."
+            ),
+        );
+    }
+    of_unsettled_gas(forecaster, cautions);
+}
+
+/// The latest gas, drawn before the change of ventilation before it had settled.
+fn of_unsettled_gas(forecaster: &Forecaster<'_>, cautions: &mut Cautions) {
+    let baseline = forecaster.baseline();
+    let Some(minutes) = baseline.gases.last().and_then(|gas| gas.minutes_since_change) else { return };
+    let settled = forecaster.latest_gas_settles_after_min().unwrap_or(UNSETTLED_WITHIN_MIN);
+    if minutes < settled {
+        cautions.say(
+            "gas_unsettled",
+            format!(
+                "The latest gas was drawn {minutes:.0} min after ventilation was changed, before it had settled (about \
+                 {settled:.0} min): PaCO2 was still on its way, and a plan from it will overshoot. Repeat the gas first."
+            ),
         );
     }
 }
@@ -144,6 +196,16 @@ fn of_lung(forecaster: &Forecaster<'_>, cautions: &mut Cautions) {
         );
         return;
     };
+    if lung.compliance_ml_cmh2o > LARGEST_COMPLIANCE {
+        cautions.say(
+            "compliance_implausible",
+            format!(
+                "The readings give a respiratory-system compliance of {:.0} mL/cmH2O, which is hardly possible: check tidal \
+                 volume, plateau and PEEP; the pressures shown rest on it.",
+                lung.compliance_ml_cmh2o
+            ),
+        );
+    }
     match mechanics.trapping_evidence() {
         TrappingEvidence::Assumed => cautions.say(
             "trapping_assumed",

@@ -77,8 +77,7 @@ impl Target {
                 typed(paco2)
             }
             Asked::Profile => {
-                let band =
-                    profile_band_mmhg(baseline.profile.target, excess).ok_or_else(|| no_ph("profile"))?;
+                let band = profile_band_mmhg(baseline.profile.target, excess).ok_or_else(|| no_ph(""))?;
                 let [low, high] = band;
                 let inward = INWARD_MMHG.min((high - low) / 2.0);
                 let aimed = if now_mmhg < low {
