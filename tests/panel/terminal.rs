@@ -11,7 +11,7 @@ use portable_pty::{Child, CommandBuilder, MasterPty, PtySize, native_pty_system}
 use tidewright::case::presets;
 
 /// Content that has not come by then will not come.
-const DEADLINE: Duration = Duration::from_secs(20);
+const DEADLINE: Duration = Duration::from_secs(60);
 
 struct Screen {
     master: Box<dyn MasterPty + Send>,
@@ -106,6 +106,19 @@ impl Screen {
                 return status.exit_code();
             }
             assert!(Instant::now() < end, "the program does not end");
+            std::thread::yield_now();
+        }
+    }
+
+    /// Waits until the program stands still, as a shell does before it lets it go on; known from `/proc`, where there is one.
+    fn stopped(&self) {
+        let stat = format!("/proc/{}/stat", self.child.process_id().unwrap());
+        let end = Instant::now() + DEADLINE;
+        while let Ok(text) = std::fs::read_to_string(&stat) {
+            if text.rsplit(')').next().is_some_and(|rest| rest.trim_start().starts_with('T')) {
+                return;
+            }
+            assert!(Instant::now() < end, "the program does not stop");
             std::thread::yield_now();
         }
     }
@@ -257,6 +270,7 @@ fn ctrl_z_stops_with_the_terminal_given_back_and_continues() {
     screen.says("rate /min").press("l").says("‹ *16 ›");
     screen.press("\x1a").until("the first screen", |screen| !screen.parser.screen().alternate_screen());
     screen.is_sane();
+    screen.stopped();
     screen.signal("CONT");
     screen.until("the other screen", |screen| screen.parser.screen().alternate_screen()).says("‹ *16 ›");
     screen.press("l").says("‹ *17 ›").press("q");
