@@ -11,7 +11,7 @@ use portable_pty::{Child, CommandBuilder, MasterPty, PtySize, native_pty_system}
 use tidewright::case::presets;
 
 /// Content that has not come by then will not come.
-const DEADLINE: Duration = Duration::from_secs(60);
+const DEADLINE: Duration = Duration::from_secs(45);
 
 struct Screen {
     master: Box<dyn MasterPty + Send>,
