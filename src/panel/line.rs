@@ -8,7 +8,7 @@ pub use value::{Held, held, is_moved, put, reset, value};
 
 use crate::case::entry::Control;
 use crate::case::settings::Timing;
-use crate::planning::trial::Dialled;
+use crate::planning::dialled::Dialled;
 use crate::quantity::input::Key;
 
 /// A line of the settings.

@@ -7,12 +7,12 @@ use crate::planning::answer::{Now, SettingsReport};
 use crate::planning::baseline::Baseline;
 use crate::planning::caution::{Caution, Cautions};
 use crate::planning::course::Course;
+use crate::planning::dialled::Dialled;
 use crate::planning::figures;
 use crate::planning::forecast::{Forecaster, Held, HeldReadings};
 use crate::planning::outcome::Outcome;
 use crate::planning::remarks;
 use crate::planning::target::Target;
-use crate::planning::trial::Dialled;
 
 use super::state::Turned;
 

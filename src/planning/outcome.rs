@@ -4,7 +4,7 @@ use serde::Serialize;
 
 use super::belief::Interval;
 use super::limits::LimitVerdict;
-pub use super::state::State;
+use super::state::State;
 
 /// A state, how sure its PaCO2 is, and its limits.
 #[derive(Debug, Clone, PartialEq, Serialize)]

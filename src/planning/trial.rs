@@ -7,7 +7,7 @@ use crate::physiology::breath::pressure_control::filling;
 use crate::physiology::breath::{Lung, Phases};
 use crate::quantity::show::number;
 
-pub use super::dialled::Dialled;
+use super::dialled::Dialled;
 use super::forecast::Forecaster;
 
 /// CO2 output under trial.

@@ -105,7 +105,7 @@ impl Hands {
     }
 
     /// Something of what is tried.
-    pub fn tried<T>(&self, see: impl FnOnce(&tidewright::planning::outcome::State) -> T) -> T {
+    pub fn tried<T>(&self, see: impl FnOnce(&tidewright::planning::state::State) -> T) -> T {
         tidewright::panel::update::on_scene(&self.state, |scene| {
             Ok(see(&scene.tried.as_ref().unwrap().outcome.state))
         })

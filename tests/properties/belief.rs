@@ -5,8 +5,9 @@ use tidewright::case::profile::Figures;
 use tidewright::case::record::Record;
 use tidewright::planning::baseline::Baseline;
 use tidewright::planning::belief::{Interval, USUAL};
+use tidewright::planning::dialled::Dialled;
 use tidewright::planning::forecast::{Forecaster, Held};
-use tidewright::planning::trial::{Dialled, Trial};
+use tidewright::planning::trial::Trial;
 use tidewright::quantity::input::Key;
 
 use crate::bed::{Bed, Reach, bed, cases, plain, record};

@@ -3,8 +3,9 @@
 use super::LineId;
 use crate::case::entry::Control;
 use crate::case::settings::Timing;
+use crate::planning::dialled::Dialled;
 use crate::planning::forecast::Forecaster;
-use crate::planning::trial::{Co2Trial, Dialled, Trial};
+use crate::planning::trial::{Co2Trial, Trial};
 
 /// What a line holds in some settings.
 #[derive(Debug, Clone, Copy, PartialEq)]

@@ -6,7 +6,7 @@ use ratatui::style::Style;
 use super::pen::{Pen, cells};
 use crate::panel::scene::Scene;
 use crate::planning::baseline::gas_exchange::SeriesEvidence;
-use crate::planning::outcome::State;
+use crate::planning::state::State;
 use crate::quantity::show::number;
 
 /// A share of the breath: its sign, its name, mL.

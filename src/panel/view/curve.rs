@@ -8,8 +8,8 @@ use crate::case::entry::Control;
 use crate::panel::line::{self, LineId};
 use crate::panel::scene::{Scene, Tried};
 use crate::panel::state::State;
+use crate::planning::dialled::Dialled;
 use crate::planning::solve::{Summit, summit_of};
-use crate::planning::trial::Dialled;
 use crate::quantity::show::number;
 use crate::quantity::unit::Dimension;
 

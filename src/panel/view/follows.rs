@@ -7,7 +7,8 @@ use super::pen::Pen;
 use super::rail::Rail;
 use crate::panel::scene::{Scene, Tried};
 use crate::planning::baseline::gas_exchange::Co2Evidence;
-use crate::planning::outcome::{Outcome, State};
+use crate::planning::outcome::Outcome;
+use crate::planning::state::State;
 use crate::quantity::unit::Dimension;
 
 /// Columns: where now ends and where try ends.

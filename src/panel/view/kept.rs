@@ -9,8 +9,8 @@ use crate::note::columns::dimension;
 use crate::panel::scene::{Scene, Tried};
 use crate::panel::state::State;
 use crate::panel::theme::mark;
+use crate::planning::dialled::Dialled;
 use crate::planning::outcome::Outcome;
-use crate::planning::trial::Dialled;
 use crate::quantity::show::number;
 use crate::quantity::unit::Dimension;
 

@@ -10,8 +10,8 @@ use crate::panel::line::{self, Held, LineId};
 use crate::panel::scene::Scene;
 use crate::panel::state::{Mode, State};
 use crate::planning::baseline::gas_exchange::Co2Evidence;
+use crate::planning::dialled::Dialled;
 use crate::planning::target::Asked;
-use crate::planning::trial::Dialled;
 use crate::quantity::show::{number, ratio};
 use crate::quantity::unit::Dimension;
 

@@ -11,12 +11,12 @@ use crate::panel::action::Action;
 use crate::panel::scene::Scene;
 use crate::panel::state::{Mode, State};
 use crate::planning::baseline::Baseline;
+use crate::planning::dialled::Dialled;
 use crate::planning::figures;
 use crate::planning::gentle::{Least, Pairs};
 use crate::planning::limits::{self, Verdict};
 use crate::planning::solve::{RATES_PER_MIN, volume_range, volume_step};
 use crate::planning::target::Target;
-use crate::planning::trial::Dialled;
 use crate::quantity::show::number;
 use crate::quantity::unit::Dimension;
 
@@ -184,7 +184,7 @@ pub fn draw(state: &State, scene: &Scene<'_>, area: Rect, pen: &mut Pen<'_>) {
     legend(scene, &letters, gentle.as_ref(), area, pen);
 }
 
-fn broken(scene: &Scene<'_>, outcome: &crate::planning::outcome::State) -> Option<LimitId> {
+fn broken(scene: &Scene<'_>, outcome: &crate::planning::state::State) -> Option<LimitId> {
     let profile = &scene.forecaster.baseline().profile;
     profile
         .limits
